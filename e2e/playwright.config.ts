@@ -1,0 +1,36 @@
+/** Browser tests, run against the built site as the preview server serves it. */
+import { fileURLToPath } from 'node:url';
+import { defineConfig } from '@playwright/test';
+import { launchArguments } from '../tests/launch-arguments.mjs';
+
+const project = fileURLToPath(new URL('..', import.meta.url));
+// tests/run.mjs names a port that is free; the number here serves a run by hand.
+const port = Number(process.env.KILOSTACK_PORT ?? 4273);
+const address = `http://127.0.0.1:${port}/`;
+
+export default defineConfig({
+  testDir: '.',
+  testMatch: '**/*.spec.ts',
+  outputDir: '../.results/e2e',
+  // Two shared cores: a second browser would only make both slower, and timing tests false.
+  workers: 1,
+  retries: 0,
+  forbidOnly: true,
+  timeout: 60_000,
+  reporter: [['list'], ['json', { outputFile: '../.results/e2e.json' }]],
+  use: {
+    baseURL: address,
+    trace: 'retain-on-failure',
+    screenshot: 'only-on-failure',
+    launchOptions: {
+      executablePath: process.env.KILOSTACK_BROWSER,
+      args: launchArguments,
+    },
+  },
+  webServer: {
+    command: `node node_modules/vite/bin/vite.js preview --port ${port} --strictPort`,
+    cwd: project,
+    url: address,
+    reuseExistingServer: false,
+  },
+});
