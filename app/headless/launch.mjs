@@ -66,6 +66,7 @@ if (!existsSync(bundle)) {
 const { INIT_CWD, npm_lifecycle_event: script } = process.env;
 if (script === 'predict' && INIT_CWD) process.chdir(INIT_CWD);
 
-process.argv = [process.execPath, bundle, ...rest];
+// In place: a module may hold the array itself, as `import { argv } from 'node:process'` does.
+process.argv.splice(0, process.argv.length, process.execPath, bundle, ...rest);
 process.setSourceMapsEnabled(true);
 await import(pathToFileURL(bundle).href);
