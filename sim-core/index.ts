@@ -2,7 +2,13 @@
  * The door to the engine's data: the design's types, schema, check and examples, the signals
  * and the readings. Nothing here computes a run; that is solve.ts, for the worker alone.
  */
-export { checkDesign, checkField, defaultDesign, differences } from './design/check.ts';
+export {
+  checkDesign,
+  checkField,
+  defaultDesign,
+  differences,
+  placesThatDiffer,
+} from './design/check.ts';
 export { formatQuantity, PREFIXES, takesPrefix } from './design/engineering.ts';
 export { EXAMPLES, type Example } from './design/examples.ts';
 export type {

@@ -384,21 +384,47 @@ export function defaultDesign(): Design {
   return checked.value;
 }
 
+/** Names of the fields of which two groups hold different values. */
+const fieldsThatDiffer = (fields: Group, a: Plain, b: Plain) =>
+  Object.keys(fields).filter((name) => a[name] !== b[name]);
+
+/**
+ * Paths of the values in which two designs differ ("bridge.deadTime", "overrides.3.ratio"), in
+ * the order of the document.
+ */
+export function placesThatDiffer(a: Design, b: Design): string[] {
+  const places = fieldsThatDiffer(TITLE_FIELDS, a, b);
+  for (const group of GROUP_NAMES) {
+    for (const name of fieldsThatDiffer(GROUPS[group], a[group], b[group])) {
+      places.push(`${group}.${name}`);
+    }
+  }
+  for (let section = 1; section <= MAX_SECTIONS; section++) {
+    const ownValues = ({ overrides }: Design) =>
+      overrides.find((one) => one.section === section) ?? {};
+    for (const name of fieldsThatDiffer(WINDING_FIELDS, ownValues(a), ownValues(b))) {
+      places.push(`overrides.${section}.${name}`);
+    }
+  }
+  return places;
+}
+
 /**
  * What sets a design apart from the defaults, with its version: the form that links and files
  * hold. `checkDesign` of it gives the same design again.
  */
 export function differences(design: Design): Record<string, unknown> {
-  const changed = (fields: Group, values: Plain) =>
+  const otherwise = defaultDesign();
+  const changed = (fields: Group, values: Plain, defaults: Plain) =>
     Object.fromEntries(
-      Object.entries(fields)
-        .filter(([name, field]) => values[name] !== field.default)
-        .map(([name]) => [name, values[name]]),
+      fieldsThatDiffer(fields, values, defaults).map((name) => [name, values[name]]),
     );
-  const groups = GROUP_NAMES.map((name) => [name, changed(GROUPS[name], design[name])] as const);
+  const groups = GROUP_NAMES.map(
+    (name) => [name, changed(GROUPS[name], design[name], otherwise[name])] as const,
+  );
   return {
     version: design.version,
-    ...changed(TITLE_FIELDS, design),
+    ...changed(TITLE_FIELDS, design, otherwise),
     ...Object.fromEntries(groups.filter(([, values]) => Object.keys(values).length > 0)),
     ...(design.overrides.length > 0 && { overrides: design.overrides }),
   };
