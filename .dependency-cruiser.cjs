@@ -41,8 +41,18 @@ module.exports = {
       name: 'solve-in-the-worker-only',
       comment: 'A solve on the page would freeze it: only the worker and the command line call it.',
       severity: 'error',
-      from: { pathNot: '^(sim-core/|app/run/worker\\.ts$|app/headless/|tests/)' },
+      from: { pathNot: '^(app/run/worker\\.ts$|app/headless/|tests/)' },
       to: { path: '^sim-core/solve\\.ts$' },
+    },
+    {
+      name: 'light-door',
+      comment: 'The page loads index.ts: it must not pull the solver in behind it.',
+      severity: 'error',
+      from: { path: '^sim-core/index\\.ts$' },
+      to: {
+        path: '^sim-core/(sparse|network|transient|steady)/',
+        dependencyTypesNot: ['type-only'],
+      },
     },
     {
       name: 'worker-behind-the-session',

@@ -10,20 +10,20 @@ const { build, preview } = await import('vite');
 const configFile = join(project, 'vite.config.ts');
 const built = join(project, 'dist', 'index.html');
 
-await alone(async () => {
-  const changed = newestChange([
-    'app',
-    'sim-core',
-    'public',
-    'vite.config.ts',
-    'package-lock.json',
-  ]);
-  if ((statSync(built, { throwIfNoEntry: false })?.mtimeMs ?? 0) > changed) return;
-  const begun = new Date();
-  await build({ configFile, logLevel: 'warn' });
-  // Dated from its beginning: an edit made while it ran must count as later.
-  utimesSync(built, begun, begun);
-});
+const sources = ['app', 'sim-core', 'public', 'vite.config.ts', 'package-lock.json'];
+const isCurrent = () =>
+  (statSync(built, { throwIfNoEntry: false })?.mtimeMs ?? 0) > newestChange(sources);
+
+if (!isCurrent()) {
+  await alone('install', async () => {
+    if (isCurrent()) return;
+    console.log('Building…');
+    const begun = new Date();
+    await build({ configFile, logLevel: 'warn' });
+    // Dated from its beginning: an edit made while it ran must count as later.
+    utimesSync(built, begun, begun);
+  });
+}
 
 // Without strictPort a busy port moves on to the next free one.
 const server = await preview({ configFile });

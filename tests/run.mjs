@@ -19,7 +19,7 @@ await installIfNeeded();
 const results = join(project, '.results');
 const unitReport = join(results, 'unit.json');
 const browserReport = join(results, 'e2e.json');
-const deadline = Date.now() + allowance * 60_000;
+let deadline = Date.now() + allowance * 60_000;
 const total = { passed: 0, failed: 0, skipped: 0 };
 /** @type {string[]} */
 const times = [];
@@ -93,6 +93,18 @@ function add(succeeded, passed, failed, skipped) {
   total.skipped += skipped;
 }
 
+/** @returns {Promise<{ path: string } | { reason: string }>} */
+async function browserOrReason() {
+  // Only now: the finder itself needs what has just been installed.
+  const { findBrowser } = await import('./browser.mjs');
+  try {
+    return { path: await findBrowser() };
+  } catch (error) {
+    return { reason: String(error instanceof Error ? error.message : error) };
+  }
+}
+
+/** A port nobody listens on at this moment. @returns {Promise<string>} */
 async function freePort() {
   return new Promise((resolve, reject) => {
     const server = createServer();
@@ -104,21 +116,20 @@ async function freePort() {
   });
 }
 
-await check('format and lint', [
-  tool('@biomejs/biome/bin/biome'),
-  'check',
-  '--error-on-warnings',
-  '--max-diagnostics=200',
-]);
-await check('types', [tool('typescript/bin/tsc'), '-b', '--pretty', 'false']);
-await check('import rules', [join(import.meta.dirname, 'import-rules.mjs')]);
-await check('unused files, exports and packages', [tool('knip/bin/knip.js')]);
+async function staticChecks() {
+  await check('format and lint', [
+    tool('@biomejs/biome/bin/biome'),
+    'check',
+    '--error-on-warnings',
+    '--max-diagnostics=200',
+  ]);
+  await check('types', [tool('typescript/bin/tsc'), '-b', '--pretty', 'false']);
+  await check('import rules', [join(import.meta.dirname, 'import-rules.mjs')]);
+  await check('unused files, exports and packages', [tool('knip/bin/knip.js')]);
+}
 
-if (!process.argv.includes('--checks')) {
-  rmSync(results, { recursive: true, force: true });
-  mkdirSync(results, { recursive: true });
-
-  const unitSucceeded = await step('unit tests', [
+async function unitTests() {
+  const succeeded = await step('unit tests', [
     tool('vitest/vitest.mjs'),
     'run',
     '--reporter=default',
@@ -131,40 +142,57 @@ if (!process.argv.includes('--checks')) {
     (/** @type {any} */ file) => file.status === 'failed' && file.assertionResults.length === 0,
   ).length;
   add(
-    unitSucceeded,
+    succeeded,
     unit?.numPassedTests ?? 0,
     (unit?.numFailedTests ?? 0) + unloaded,
     (unit?.numPendingTests ?? 0) + (unit?.numTodoTests ?? 0),
   );
+}
 
-  const builds = ['build', '--config', join(project, 'vite.config.ts')];
-  await alone(() => check('build', [tool('vite/bin/vite.js'), ...builds]));
+/** @param {string} browser path of the program */
+async function browserTests(browser) {
+  const succeeded = await step(
+    'browser tests',
+    [tool('@playwright/test/cli.js'), 'test', '--config', 'e2e/playwright.config.ts'],
+    { KILOSTACK_BROWSER: browser, KILOSTACK_PORT: await freePort() },
+  );
+  const stats = report(browserReport)?.stats;
+  add(
+    succeeded,
+    stats?.expected ?? 0,
+    (stats?.unexpected ?? 0) + (stats?.flaky ?? 0),
+    stats?.skipped ?? 0,
+  );
+}
 
-  let browser;
-  try {
-    const { findBrowser } = await import('./browser.mjs');
-    browser = await findBrowser();
-    console.log(`\nBrowser: ${browser}`);
-  } catch (error) {
-    console.error(error instanceof Error ? error.message : error);
+async function everything() {
+  const browser = await browserOrReason();
+  console.log('path' in browser ? `Browser: ${browser.path}` : browser.reason);
+
+  deadline = Date.now() + allowance * 60_000;
+  rmSync(results, { recursive: true, force: true });
+  mkdirSync(results, { recursive: true });
+  await staticChecks();
+  await unitTests();
+  // Held over both, lest a start elsewhere rebuild the site under the running tests.
+  await alone('install', async () => {
+    await check('build', [
+      tool('vite/bin/vite.js'),
+      'build',
+      '--config',
+      join(project, 'vite.config.ts'),
+    ]);
+    if ('path' in browser) await browserTests(browser.path);
+  });
+  if ('reason' in browser) {
     total.failed++;
-    times.push('FAILED           browser tests: no browser');
-  }
-  if (browser) {
-    const browserSucceeded = await step(
-      'browser tests',
-      [tool('@playwright/test/cli.js'), 'test', '--config', 'e2e/playwright.config.ts'],
-      { KILOSTACK_BROWSER: browser, KILOSTACK_PORT: await freePort() },
-    );
-    const stats = report(browserReport)?.stats;
-    add(
-      browserSucceeded,
-      stats?.expected ?? 0,
-      (stats?.unexpected ?? 0) + (stats?.flaky ?? 0),
-      stats?.skipped ?? 0,
-    );
+    times.push(`FAILED           browser tests: ${browser.reason}`);
   }
 }
+
+if (process.argv.includes('--checks')) await staticChecks();
+// One run at a time: a second would share its reports and its two cores.
+else await alone('test', everything);
 
 console.log(`\n${times.join('\n')}`);
 console.log('The sum counts each step that is not a test run as one test.');

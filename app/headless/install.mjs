@@ -3,7 +3,7 @@
  * runs before anything is installed.
  */
 import { spawnSync } from 'node:child_process';
-import { linkSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
+import { linkSync, readFileSync, rmSync, statSync, writeFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { setTimeout as pause } from 'node:timers/promises';
 import { fileURLToPath } from 'node:url';
@@ -89,16 +89,20 @@ function isRunning(pid) {
   }
 }
 
+/** Longer than any install or test run takes: a lock this old (ms) was left behind. */
+const abandoned = 30 * 60_000;
+
 /**
- * Runs `work` while no other process of this project installs or builds: two first starts must
- * not write into one tree. The lock is a file that holds its owner's process number; one left by
- * a process that has died is taken over.
+ * Runs `work` while no other process of this project does work of the same kind: two first starts
+ * must not install into one tree. The lock is a file that holds its owner's process number; one
+ * left by a process that has died is taken over.
  * @template T
+ * @param {'install' | 'test'} kind `install` covers whatever writes node_modules or dist
  * @param {() => T | Promise<T>} work
  * @returns {Promise<T>}
  */
-export async function alone(work) {
-  const lock = join(project, '.install.lock');
+export async function alone(kind, work) {
+  const lock = join(project, `.${kind}.lock`);
   const mine = `${lock}.${process.pid}`;
   writeFileSync(mine, String(process.pid));
   try {
@@ -112,16 +116,18 @@ export async function alone(work) {
         if (/** @type {NodeJS.ErrnoException} */ (error).code !== 'EEXIST') throw error;
       }
       let owner;
+      let age;
       try {
         owner = Number(readFileSync(lock, 'utf8'));
+        age = Date.now() - statSync(lock).mtimeMs;
       } catch {
         continue; // given back in between
       }
-      if (!isRunning(owner)) {
+      if (!isRunning(owner) || age > abandoned) {
         rmSync(lock, { force: true });
         continue;
       }
-      if (!told) console.error(`Waiting for process ${owner}, which is installing or building.`);
+      if (!told) console.error(`Waiting for process ${owner}, which holds .${kind}.lock`);
       told = true;
       await pause(250);
     }
@@ -145,7 +151,7 @@ export async function installIfNeeded() {
     process.exit(1);
   }
   if (installIsCurrent()) return;
-  const status = await alone(() => {
+  const status = await alone('install', () => {
     if (installIsCurrent()) return 0;
     console.error('Installing packages…');
     // Both kinds are named because NODE_ENV=production or a user's npmrc may leave them out.
