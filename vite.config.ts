@@ -64,6 +64,8 @@ export default defineConfig({
     environment: 'node',
     include: ['tests/**/*.test.{ts,tsx}'],
     testTimeout: 60_000,
+    // Threads rather than processes: a test that never returns dies with the run.
+    pool: 'threads',
     maxWorkers: 2,
   },
 });
