@@ -1,0 +1,111 @@
+/**
+ * Whether a run has settled, judged by the estimated distance to its steady state.
+ *
+ * The state at the start of a drive period is compared over strides of m periods. For a
+ * slowest mode that decays by r over a stride, what is left after a stride that changed by Δ is
+ * Δ·r/(1 − r); r is the quotient of two successive changes. The stride grows with the run, so
+ * that a slow mode is not mistaken for none. Each kind of state is judged in its own norm of
+ * stored energy, as a share of what it reaches within a period; the worst kind counts.
+ */
+
+/** Periods of the first stride, and how many strides of one length before it doubles. */
+const FIRST_STRIDE = 4;
+const STRIDES_PER_LENGTH = 6;
+
+/** The estimated distance (a share) below which a run counts as settled. */
+export const SETTLED_DISTANCE = 2e-4;
+
+/** Changes below this share over a stride are taken for the steps' own unrest. */
+const UNREST = 2e-5;
+
+/** Largest quotient believed of a change that small. */
+const UNREST_DECAY = 0.8;
+
+/** Follows a run period by period. */
+export class Settling {
+  /** Estimated distance to the steady state as a share, or null while it is not known. */
+  distance: number | null = null;
+  private readonly weight: Float64Array;
+  private readonly group: Int32Array;
+  private readonly groups: number;
+  private readonly before: Float64Array;
+  private readonly change: Float64Array;
+  private readonly lastChange: Float64Array;
+  private readonly norm: Float64Array;
+  private stride = FIRST_STRIDE;
+  private periodsInStride = 0;
+  private strides = 0;
+
+  /**
+   * @param weight  capacitance or inductance of each state: ½·weight·x² is its energy
+   * @param group   kind of each state, 0 … groups − 1; −1 leaves a state out
+   */
+  constructor(weight: Float64Array, group: Int32Array, groups: number) {
+    this.weight = weight;
+    this.group = group;
+    this.groups = groups;
+    this.before = new Float64Array(weight.length);
+    this.change = new Float64Array(groups);
+    this.lastChange = new Float64Array(groups).fill(-1);
+    this.norm = new Float64Array(groups);
+  }
+
+  /** Begin anew: a value was changed. */
+  reset(): void {
+    this.distance = null;
+    this.stride = FIRST_STRIDE;
+    this.periodsInStride = 0;
+    this.strides = 0;
+    this.lastChange.fill(-1);
+  }
+
+  /**
+   * Take in the state at the end of a period.
+   * @param peak  largest magnitude of each state in the period
+   */
+  period(state: Float64Array, peak: Float64Array): void {
+    if (this.strides === 0 && this.periodsInStride === 0) this.before.set(state);
+    if (++this.periodsInStride <= this.stride) return;
+    this.periodsInStride = 1;
+    this.strides++;
+    const { weight, group, before, change, norm } = this;
+    change.fill(0);
+    norm.fill(0);
+    for (let i = 0; i < state.length; i++) {
+      const g = group[i];
+      if (g < 0) continue;
+      change[g] += weight[i] * (state[i] - before[i]) ** 2;
+      norm[g] += weight[i] * peak[i] ** 2;
+    }
+    before.set(state);
+    let worst = 0;
+    let known = true;
+    for (let g = 0; g < this.groups; g++) {
+      const share = norm[g] > 0 ? Math.sqrt(change[g] / norm[g]) : 0;
+      const last = this.lastChange[g];
+      this.lastChange[g] = share;
+      if (last < 0) known = false;
+      else worst = Math.max(worst, left(share, last));
+    }
+    this.distance = known ? worst : null;
+    if (this.strides % STRIDES_PER_LENGTH === 0) {
+      this.stride *= 2;
+      this.lastChange.fill(-1);
+    }
+  }
+
+  /** Whether the distance is known and small enough. */
+  get settled(): boolean {
+    return this.distance !== null && this.distance < SETTLED_DISTANCE;
+  }
+}
+
+/** What is left to go after a stride that changed by `share` when the one before changed by `last`. */
+function left(share: number, last: number): number {
+  if (share === 0) return 0;
+  const quotient = share / last;
+  const decay = share < UNREST ? Math.min(quotient, UNREST_DECAY) : quotient;
+  if (!(decay < 1)) return Infinity;
+  // The change itself counts too: a mode that decays within a stride has left no trace of r.
+  return Math.max(share * (decay / (1 - decay)), Math.min(share, last) * 0.5);
+}

@@ -1,0 +1,762 @@
+/**
+ * One implicit step of a network: SDIRK2 with complementarity inside each stage.
+ *
+ * Method: two stages, γ = 1 − 1/√2, both with a = γh; stiffly accurate, L-stable, order 2.
+ * Source: Alexander, SIAM J. Numer. Anal. 14 (1977) 1006. Stage 2 starts from
+ * κX₁ + (1 − κ)xₙ with κ = (1 − γ)/γ, so only states are needed, never old derivatives.
+ *
+ * Within a stage every element is i = g·v + s. Devices with straight pieces are solved by
+ * choosing the piece of each from the voltages just found until nothing changes. All
+ * characteristics rise, so the stage minimises a convex function, the co-content (Millar,
+ * Phil. Mag. 42 (1951) 1150), and an exact search along the line to the new point always ends.
+ *
+ * State vector: capacitor voltages (V), then inductor currents (A), then flux linkages (Wb).
+ */
+import { numberUnknowns, type Stamps, type System, stamp } from '../network/mna.ts';
+import type { Network, Part, Piece } from '../network/network.ts';
+import { factor, solve } from '../sparse/ldl.ts';
+import { FactorCache } from './factors.ts';
+
+/** γ of the method. */
+export const GAMMA = 1 - Math.SQRT1_2;
+const KAPPA = (1 - GAMMA) / GAMMA;
+
+/**
+ * Scale E of the error estimate h·E·(−(1−γ)f₀ + f₁ − γf₂). For x' = zx/h the step's error begins
+ * with (3γ² − 2γ³ − 1/6)z³ and the bracket with (γ² − γ/2)z³; E is their quotient, −2/3. Between
+ * events a network with constant sources is autonomous and affine, so that the estimate is the
+ * leading error term itself.
+ */
+const ESTIMATE = (3 * GAMMA ** 2 - 2 * GAMMA ** 3 - 1 / 6) / (GAMMA ** 2 - GAMMA / 2);
+
+/** Parts in the order in which energies are kept. */
+export const PARTS: readonly Part[] = [
+  'supply',
+  'bridge',
+  'tank',
+  'transformer',
+  'rectifier',
+  'output',
+  'load',
+  'earthing',
+];
+
+/** Rounds of piece changes before the line search takes over, and before the stage is given up. */
+const FREE_ROUNDS = 10;
+const MOST_ROUNDS = 200;
+
+/** A pivot this small beside its diagonal has lost all its digits. */
+const LEAST_PIVOT = 1e-15;
+
+/** Everything that depends on the length of the step alone. */
+export interface StepLength {
+  readonly h: number;
+  readonly a: number;
+  /** Capacitors: companion conductance, and a/C. */
+  readonly gC: Float64Array;
+  readonly kC: Float64Array;
+  /** Inductors: companion conductance, and the share of the old current. */
+  readonly gL: Float64Array;
+  readonly wL: Float64Array;
+  /** The matrix without the devices. */
+  readonly base: Float64Array;
+  readonly keyA: number;
+  readonly keyB: number;
+}
+
+/** Why a step could not be taken. */
+export interface StepFailure {
+  readonly kind: 'singular' | 'no-convergence' | 'not-finite';
+  /** Name of the node or element concerned. */
+  readonly name: string;
+}
+
+/** A well-spread 32-bit number for a small integer (finaliser of MurmurHash3, public domain). */
+function mix(value: number): number {
+  let x = Math.imul(value + 0x9e3779b9, 0x85ebca6b);
+  x ^= x >>> 13;
+  x = Math.imul(x, 0xc2b2ae35);
+  x ^= x >>> 16;
+  x = Math.imul(x, 0x27d4eb2f);
+  return x ^ (x >>> 15);
+}
+
+const int = (values: readonly number[]): Int32Array => Int32Array.from(values);
+const real = (values: readonly number[]): Float64Array => Float64Array.from(values);
+
+/** A network ready to be stepped. Fields hold the present state; all arrays are reused. */
+export class Stepper {
+  readonly network: Network;
+  readonly system: System;
+  /** The state now; see the head of this file. */
+  readonly state: Float64Array;
+  /** Node voltages at the end of the last step, by unknown; the last entry is earth. */
+  readonly x: Float64Array;
+  /** Currents of the characteristics at the end of the last step. */
+  readonly deviceCurrent: Float64Array;
+  /** Magnitude to which each state's error is compared. */
+  readonly scale: Float64Array;
+  /** Energy delivered by sources, and turned to heat in each part, since the start (J). */
+  delivered = 0;
+  readonly dissipated = new Float64Array(PARTS.length);
+  steps = 0;
+  commutations = 0;
+  factorisations = 0;
+  solves = 0;
+  /** Of the last attempted step: did a device change its piece; error over scale. */
+  changed = false;
+  error = 0;
+  failure: StepFailure | null = null;
+
+  private readonly nC: number;
+  private readonly nL: number;
+  private readonly nF: number;
+  private readonly nR: number;
+  private readonly nS: number;
+
+  private readonly cFrom: Int32Array;
+  private readonly cTo: Int32Array;
+  private readonly cValue: Float64Array;
+  private readonly cResistance: Float64Array;
+  private readonly cPart: Int32Array;
+  private readonly lFrom: Int32Array;
+  private readonly lTo: Int32Array;
+  private readonly lStarFrom: Int32Array;
+  private readonly lStarTo: Int32Array;
+  private readonly lRatio: Float64Array;
+  private readonly lValue: Float64Array;
+  private readonly lResistance: Float64Array;
+  private readonly lPart: Int32Array;
+  private readonly rFrom: Int32Array;
+  private readonly rTo: Int32Array;
+  private readonly rConductance: Float64Array;
+  private readonly rPart: Int32Array;
+  private readonly sFrom: Int32Array;
+  private readonly sTo: Int32Array;
+  private readonly sConductance: Float64Array;
+  private readonly sPart: Int32Array;
+
+  /** Devices: the cores, then the characteristics. */
+  private readonly dFrom: Int32Array;
+  private readonly dTo: Int32Array;
+  private readonly dPart: Int32Array;
+  private readonly dSource: Float64Array;
+  private readonly dCurves: Int32Array[];
+  private readonly dGate: Int32Array;
+  private readonly pieceLow: Float64Array;
+  private readonly pieceHigh: Float64Array;
+  private readonly pieceSlope: Float64Array;
+  private readonly pieceOffset: Float64Array;
+  private readonly piece: Int32Array;
+  private readonly pieceBefore: Int32Array;
+  private readonly dSlope: Float64Array;
+  private keyA = 0;
+  private keyB = 0;
+
+  private readonly cache: FactorCache;
+  private readonly lengths = new Map<number, StepLength>();
+  private readonly history: Float64Array;
+  private readonly stage1: Float64Array;
+  private readonly stage2: Float64Array;
+  private readonly xBefore: Float64Array;
+  private readonly slope0: Float64Array;
+  private readonly slope1: Float64Array;
+  private readonly slope2: Float64Array;
+  private slopeKnown = false;
+  private readonly sources: Float64Array;
+  private readonly trial: Float64Array;
+  private readonly assembled: Float64Array;
+  private readonly heat = new Float64Array(PARTS.length);
+  private work = 0;
+  private factors: Float64Array;
+  private factorsFor: StepLength | null = null;
+  private factorsA = 0;
+  private factorsB = 0;
+
+  constructor(network: Network) {
+    const system = numberUnknowns(network);
+    this.network = network;
+    this.system = system;
+    const { resistors, capacitors, inductors, cores, characteristics, sines } = network;
+    const at = (node: number): number => system.unknown[node];
+    const part = (e: { readonly part: Part }): number => PARTS.indexOf(e.part);
+    this.nC = capacitors.length;
+    this.nL = inductors.length;
+    this.nF = cores.length;
+    this.nR = resistors.length;
+    this.nS = this.nC + this.nL + this.nF;
+
+    this.cFrom = int(capacitors.map((e) => at(e.from)));
+    this.cTo = int(capacitors.map((e) => at(e.to)));
+    this.cValue = real(capacitors.map((e) => e.capacitance));
+    this.cResistance = real(capacitors.map((e) => e.resistance));
+    this.cPart = int(capacitors.map(part));
+    this.lFrom = int(inductors.map((e) => at(e.from)));
+    this.lTo = int(inductors.map((e) => at(e.to)));
+    this.lStarFrom = int(inductors.map((e) => at(e.starFrom)));
+    this.lStarTo = int(inductors.map((e) => at(e.starTo)));
+    this.lRatio = real(inductors.map((e) => e.ratio));
+    this.lValue = real(inductors.map((e) => e.inductance));
+    this.lResistance = real(inductors.map((e) => e.resistance));
+    this.lPart = int(inductors.map(part));
+    this.rFrom = int(resistors.map((e) => at(e.from)));
+    this.rTo = int(resistors.map((e) => at(e.to)));
+    this.rConductance = real(resistors.map((e) => 1 / e.resistance));
+    this.rPart = int(resistors.map(part));
+    this.sFrom = int(sines.map((e) => at(e.from)));
+    this.sTo = int(sines.map((e) => at(e.to)));
+    this.sConductance = real(sines.map((e) => 1 / e.resistance));
+    this.sPart = int(sines.map(part));
+
+    const devices = [...cores, ...characteristics];
+    this.dFrom = int(devices.map((e) => at(e.from)));
+    this.dTo = int(devices.map((e) => at(e.to)));
+    this.dPart = int(devices.map(part));
+    this.dSource = real(devices.map((e) => ('source' in e ? e.source : 0)));
+    this.dGate = int(devices.map((e) => ('gate' in e ? e.gate : -1)));
+    const pieces: Piece[] = [];
+    this.dCurves = devices.map((e) => {
+      const curves = 'curves' in e ? e.curves : [e.pieces];
+      return int(
+        curves.map((curve) => {
+          const first = pieces.length;
+          pieces.push(...curve);
+          return first;
+        }),
+      );
+    });
+    this.pieceLow = real(pieces.map((p) => p.low));
+    this.pieceHigh = real(pieces.map((p) => p.high));
+    this.pieceSlope = real(pieces.map((p) => p.slope));
+    this.pieceOffset = real(pieces.map((p) => p.offset));
+    this.piece = new Int32Array(devices.length);
+    this.pieceBefore = new Int32Array(devices.length);
+    this.dSlope = new Float64Array(devices.length);
+
+    const n = system.pattern.n;
+    const size = n + system.pattern.nnz;
+    this.x = new Float64Array(n + 1);
+    this.xBefore = new Float64Array(n + 1);
+    this.sources = new Float64Array(n + 1);
+    this.trial = new Float64Array(n + 1);
+    this.assembled = new Float64Array(size);
+    this.cache = new FactorCache(size);
+    this.factors = new Float64Array(size);
+    this.state = new Float64Array(this.nS);
+    this.scale = new Float64Array(this.nS).fill(1);
+    this.history = new Float64Array(this.nS);
+    this.stage1 = new Float64Array(this.nS);
+    this.stage2 = new Float64Array(this.nS);
+    this.slope0 = new Float64Array(this.nS);
+    this.slope1 = new Float64Array(this.nS);
+    this.slope2 = new Float64Array(this.nS);
+    this.deviceCurrent = new Float64Array(devices.length);
+
+    this.state.set(capacitors.map((e) => e.voltage));
+    this.state.set(
+      inductors.map((e) => e.current),
+      this.nC,
+    );
+    this.state.set(
+      cores.map((e) => e.fluxLinkage),
+      this.nC + this.nL,
+    );
+    for (let d = 0; d < devices.length; d++) {
+      const start = d < this.nF ? this.state[this.nC + this.nL + d] : 0;
+      this.place(d, this.dCurves[d][0], start);
+    }
+  }
+
+  /** Number of capacitors, inductors and cores: where the parts of the state vector begin. */
+  get counts(): { readonly capacitors: number; readonly inductors: number; readonly cores: number } {
+    return { capacitors: this.nC, inductors: this.nL, cores: this.nF };
+  }
+
+  /** Index of a characteristic's current in `deviceCurrent`, by its place in the network. */
+  deviceOf(characteristic: number): number {
+    return this.nF + characteristic;
+  }
+
+  /** Put device d on the piece of a curve (its first piece given) that holds x. */
+  private place(d: number, curve: number, x: number): void {
+    let p = curve;
+    while (x > this.pieceHigh[p]) p++;
+    this.move(d, p);
+  }
+
+  private move(d: number, p: number): void {
+    const old = this.piece[d];
+    // Each piece belongs to one device, so the exclusive or of all pieces' keys is a key of all.
+    this.keyA ^= mix(2 * old) ^ mix(2 * p);
+    this.keyB ^= mix(2 * old + 1) ^ mix(2 * p + 1);
+    this.piece[d] = p;
+  }
+
+  /**
+   * Set the gate signals. Devices whose gate changed go to the piece of their other curve that
+   * holds their present voltage; the state is not touched.
+   * @param on  gate signal → on or off
+   */
+  setGates(on: (gate: number) => boolean): void {
+    for (let d = this.nF; d < this.piece.length; d++) {
+      if (this.dGate[d] < 0) continue;
+      const curves = this.dCurves[d];
+      this.place(d, curves[on(this.dGate[d]) ? 1 : 0], this.x[this.dFrom[d]] - this.x[this.dTo[d]]);
+    }
+    // The slope at the start of the next step is not the slope at the end of the last.
+    this.slopeKnown = false;
+  }
+
+  /** The tables for steps of length h seconds, h > 0; made once per length. */
+  length(h: number): StepLength {
+    const known = this.lengths.get(h);
+    if (known) return known;
+    const a = GAMMA * h;
+    const gC = new Float64Array(this.nC);
+    const kC = new Float64Array(this.nC);
+    for (let e = 0; e < this.nC; e++) {
+      kC[e] = a / this.cValue[e];
+      gC[e] = 1 / (kC[e] + this.cResistance[e]);
+    }
+    const gL = new Float64Array(this.nL);
+    const wL = new Float64Array(this.nL);
+    for (let e = 0; e < this.nL; e++) {
+      const denominator = this.lValue[e] + a * this.lResistance[e];
+      gL[e] = a / denominator;
+      wL[e] = this.lValue[e] / denominator;
+    }
+    const base = new Float64Array(this.assembled.length);
+    stamp(this.system.resistors, this.rConductance, base);
+    stamp(this.system.capacitors, gC, base);
+    stamp(this.system.inductors, gL, base);
+    stamp(this.system.sines, this.sConductance, base);
+    const serial = this.lengths.size + 1;
+    const keyA = mix(-2 * serial);
+    const keyB = mix(-2 * serial - 1);
+    const made: StepLength = { h, a, gC, kC, gL, wL, base, keyA, keyB };
+    this.lengths.set(h, made);
+    return made;
+  }
+
+  /**
+   * Attempt one step. On success `state` is untouched still: `accept` takes the step,
+   * `reject` forgets it. Allocates nothing.
+   * @param step  from `length`
+   * @param time  seconds, at the start of the step
+   * @returns false if a stage could not be solved; `failure` then says why
+   */
+  attempt(step: StepLength, time: number): boolean {
+    const { nS, state, history, stage1, stage2, slope0, slope1, slope2, scale } = this;
+    const { a, h } = step;
+    this.pieceBefore.set(this.piece);
+    this.xBefore.set(this.x);
+    const keyA = this.keyA;
+    const keyB = this.keyB;
+    this.heat.fill(0);
+    this.work = 0;
+    this.failure = null;
+
+    if (!this.stage(step, time + GAMMA * h, (1 - GAMMA) * h, state, stage1)) return false;
+    this.changed = this.keyA !== keyA || this.keyB !== keyB;
+    for (let i = 0; i < nS; i++) history[i] = state[i] + KAPPA * (stage1[i] - state[i]);
+    if (!this.stage(step, time + h, a, history, stage2)) return false;
+    this.changed ||= this.keyA !== keyA || this.keyB !== keyB;
+
+    const inverse = 1 / a;
+    let worst = 0;
+    let sum = 0;
+    for (let i = 0; i < nS; i++) {
+      const f1 = (stage1[i] - state[i]) * inverse;
+      const f2 = (stage2[i] - history[i]) * inverse;
+      slope1[i] = f1;
+      slope2[i] = f2;
+      const error = Math.abs(f1 - GAMMA * f2 - (1 - GAMMA) * slope0[i]) / scale[i];
+      if (error > worst) worst = error;
+      sum += stage2[i];
+    }
+    this.error = this.slopeKnown ? Math.abs(ESTIMATE) * h * worst : 0;
+    // A sum is finite only if all its terms are.
+    if (!(sum - sum === 0)) {
+      const bad = stage2.findIndex((value) => !Number.isFinite(value));
+      this.failure = { kind: 'not-finite', name: this.nameOfState(bad) };
+      return false;
+    }
+    return true;
+  }
+
+  /** Whether the error of the last attempt could be estimated (not right after a gating edge). */
+  get estimated(): boolean {
+    return this.slopeKnown;
+  }
+
+  /** Take the step just attempted. */
+  accept(): void {
+    if (this.changed) {
+      for (let d = 0; d < this.piece.length; d++) {
+        if (this.piece[d] !== this.pieceBefore[d]) this.commutations++;
+      }
+    }
+    this.state.set(this.stage2);
+    this.slope0.set(this.slope2);
+    this.slopeKnown = true;
+    this.delivered += this.work;
+    for (let k = 0; k < this.heat.length; k++) this.dissipated[k] += this.heat[k];
+    this.steps++;
+  }
+
+  /** Forget the step just attempted: devices return to their pieces. */
+  reject(): void {
+    for (let d = 0; d < this.piece.length; d++) {
+      if (this.piece[d] !== this.pieceBefore[d]) this.move(d, this.pieceBefore[d]);
+    }
+    this.x.set(this.xBefore);
+  }
+
+  /**
+   * Where in the step just attempted the first device left its piece, as a share of the step
+   * from 0 to 1, by the secant through the ends of the step. Call before `reject`.
+   */
+  firstChange(): number {
+    const { x, xBefore, piece, pieceBefore, pieceLow, pieceHigh, nF } = this;
+    const fluxes = this.nC + this.nL;
+    let first = 1;
+    for (let d = 0; d < piece.length; d++) {
+      const p = pieceBefore[d];
+      if (piece[d] === p) continue;
+      const from = this.dFrom[d];
+      const to = this.dTo[d];
+      const before = d < nF ? this.state[fluxes + d] : xBefore[from] - xBefore[to];
+      const after = d < nF ? this.stage2[fluxes + d] : x[from] - x[to];
+      const corner = after > before ? pieceHigh[p] : pieceLow[p];
+      const share = (corner - before) / (after - before);
+      // A device that came back within the step, or jumped at its start, says nothing: start.
+      first = Math.min(first, share >= 0 && share <= 1 ? share : 0);
+    }
+    return first;
+  }
+
+  /** Energy stored in capacitances, inductances and cores (J). */
+  storedEnergy(): number {
+    let sum = 0;
+    for (let e = 0; e < this.nC; e++) sum += 0.5 * this.cValue[e] * this.state[e] ** 2;
+    for (let e = 0; e < this.nL; e++) sum += 0.5 * this.lValue[e] * this.state[this.nC + e] ** 2;
+    for (let e = 0; e < this.nF; e++) sum += this.coreEnergy(e, this.state[this.nC + this.nL + e]);
+    return sum;
+  }
+
+  /** Capacitance or inductance of each state (F, H): ½·weight·x² is its energy. */
+  weights(): Float64Array {
+    const { capacitors, inductors, cores } = this.network;
+    return real([
+      ...capacitors.map((e) => e.capacitance),
+      ...inductors.map((e) => e.inductance),
+      ...cores.map((e) => Math.max(...e.pieces.map((p) => p.slope))),
+    ]);
+  }
+
+  /** Energy of the capacitances of some parts (J). */
+  chargedEnergy(parts: readonly Part[]): number {
+    let sum = 0;
+    for (let e = 0; e < this.nC; e++) {
+      if (parts.includes(PARTS[this.cPart[e]])) sum += 0.5 * this.cValue[e] * this.state[e] ** 2;
+    }
+    return sum;
+  }
+
+  /** ∫ i dλ from 0 to the flux linkage, along the pieces. */
+  private coreEnergy(core: number, fluxLinkage: number): number {
+    const from = Math.min(0, fluxLinkage);
+    const to = Math.max(0, fluxLinkage);
+    let sum = 0;
+    for (const p of this.network.cores[core].pieces) {
+      const low = Math.max(from, p.low);
+      const high = Math.min(to, p.high);
+      if (high > low) sum += (high - low) * (p.slope * 0.5 * (low + high) + p.offset);
+    }
+    return fluxLinkage < 0 ? -sum : sum;
+  }
+
+  /** Name of the element that owns a state. */
+  nameOfState(i: number): string {
+    const { capacitors, inductors, cores } = this.network;
+    if (i < this.nC) return capacitors[i].name;
+    if (i < this.nC + this.nL) return inductors[i - this.nC].name;
+    return cores[i - this.nC - this.nL].name;
+  }
+
+  /**
+   * Solve one stage: X = history + a·f(X).
+   * @param weight  seconds for which this stage's powers count
+   * @param out     receives X
+   */
+  private stage(
+    step: StepLength,
+    time: number,
+    weight: number,
+    history: Float64Array,
+    out: Float64Array,
+  ): boolean {
+    this.collectSources(step, time, history);
+    if (!this.findPieces(step, history)) return false;
+    this.takeStates(step, history, out);
+    this.addPowers(time, weight, out);
+    return true;
+  }
+
+  /** Right-hand side of everything but the devices. */
+  private collectSources(step: StepLength, time: number, history: Float64Array): void {
+    const { sources, nC, nL, cFrom, cTo, lFrom, lTo, lStarFrom, lStarTo, lRatio } = this;
+    const { gC, wL } = step;
+    sources.fill(0);
+    for (let e = 0; e < nC; e++) {
+      const s = gC[e] * history[e];
+      sources[cFrom[e]] += s;
+      sources[cTo[e]] -= s;
+    }
+    for (let e = 0; e < nL; e++) {
+      const s = wL[e] * history[nC + e];
+      sources[lFrom[e]] -= s;
+      sources[lTo[e]] += s;
+      const reflected = lRatio[e] * s;
+      sources[lStarFrom[e]] -= reflected;
+      sources[lStarTo[e]] += reflected;
+    }
+    for (let e = 0; e < this.sFrom.length; e++) {
+      const s = this.sConductance[e] * this.emf(e, time);
+      sources[this.sFrom[e]] += s;
+      sources[this.sTo[e]] -= s;
+    }
+  }
+
+  private emf(sine: number, time: number): number {
+    const { amplitude, frequency, phase } = this.network.sines[sine];
+    return amplitude * Math.sin(2 * Math.PI * frequency * time + phase);
+  }
+
+  /** Solve for x, changing devices' pieces until all hold. */
+  private findPieces(step: StepLength, history: Float64Array): boolean {
+    const { x, trial, nF } = this;
+    const fluxes = this.nC + this.nL;
+    const devices = this.piece.length;
+    for (let round = 0; round < MOST_ROUNDS; round++) {
+      if (round >= FREE_ROUNDS) trial.set(x);
+      if (!this.solveNow(step, history)) return false;
+      // Far from rest the pieces may cycle; the exact minimum along the line cannot.
+      if (round >= FREE_ROUNDS) this.searchLine(step, history);
+      let moved = false;
+      let last = 0;
+      for (let d = 0; d < devices; d++) {
+        const from = x[this.dFrom[d]];
+        const to = x[this.dTo[d]];
+        const at = d < nF ? history[fluxes + d] + step.a * (from - to) : from - to;
+        let p = this.piece[d];
+        if (at <= this.pieceHigh[p] && at >= this.pieceLow[p]) continue;
+        // Pieces join continuously: within rounding of a corner either of them is right.
+        const slack = 1e-11 * (d < nF ? Math.abs(at) : Math.abs(from) + Math.abs(to));
+        if (at <= this.pieceHigh[p] + slack && at >= this.pieceLow[p] - slack) continue;
+        while (at > this.pieceHigh[p]) p++;
+        while (at < this.pieceLow[p]) p--;
+        if (!(at - at === 0)) break;
+        this.move(d, p);
+        moved = true;
+        last = d;
+      }
+      if (!moved) return true;
+      if (round === MOST_ROUNDS - 1) {
+        const { cores, characteristics } = this.network;
+        const name = last < nF ? cores[last].name : characteristics[last - nF].name;
+        this.failure = { kind: 'no-convergence', name };
+      }
+    }
+    return false;
+  }
+
+  /** Solve for x with the devices on their present pieces. */
+  private solveNow(step: StepLength, history: Float64Array): boolean {
+    const { x, piece, pieceOffset, pieceSlope, nF, dFrom, dTo } = this;
+    const fluxes = this.nC + this.nL;
+    if (
+      this.factorsFor !== step ||
+      this.factorsA !== this.keyA ||
+      this.factorsB !== this.keyB
+    ) {
+      if (!this.factorNow(step)) return false;
+    }
+    x.set(this.sources);
+    for (let d = 0; d < piece.length; d++) {
+      const p = piece[d];
+      let s = pieceOffset[p];
+      if (d < nF) s += pieceSlope[p] * history[fluxes + d];
+      x[dFrom[d]] -= s;
+      x[dTo[d]] += s;
+    }
+    solve(this.system.pattern, this.factors, x);
+    x[x.length - 1] = 0;
+    this.solves++;
+    return true;
+  }
+
+  private factorNow(step: StepLength): boolean {
+    const { pattern } = this.system;
+    const a = this.keyA ^ step.keyA;
+    const b = this.keyB ^ step.keyB;
+    let factors = this.cache.find(a, b);
+    if (!factors) {
+      const { assembled, dSlope, piece, pieceSlope, nF } = this;
+      for (let d = 0; d < piece.length; d++) {
+        dSlope[d] = d < nF ? step.a * pieceSlope[piece[d]] : pieceSlope[piece[d]];
+      }
+      assembled.set(step.base);
+      addDevices(this.system.cores, dSlope, 0, assembled);
+      addDevices(this.system.characteristics, dSlope, nF, assembled);
+      factors = this.cache.add(a, b);
+      factors.set(assembled);
+      let bad = factor(pattern, factors);
+      for (let k = 0; k < pattern.n && bad < 0; k++) {
+        if (factors[k] * assembled[k] * LEAST_PIVOT > 1) bad = k;
+      }
+      this.factorisations++;
+      if (bad >= 0) {
+        this.cache.clear();
+        this.factorsFor = null;
+        this.failure = { kind: 'singular', name: this.system.nodeOf[bad] };
+        return false;
+      }
+    }
+    this.factors = factors;
+    this.factorsFor = step;
+    this.factorsA = this.keyA;
+    this.factorsB = this.keyB;
+    return true;
+  }
+
+  /**
+   * Move x to the point of least co-content on the line from `trial` to x.
+   * The derivative along the line is a rising function in straight pieces: halve until the
+   * sign change is bracketed closely, then take the secant through the bracket.
+   */
+  private searchLine(step: StepLength, history: Float64Array): void {
+    const { x, trial } = this;
+    const atFull = this.slopeAlong(step, history, 1);
+    if (atFull <= 0) return;
+    let low = 0;
+    let high = 1;
+    let atLow = this.slopeAlong(step, history, 0);
+    let atHigh = atFull;
+    if (atLow >= 0) return;
+    for (let k = 0; k < 60 && high - low > 1e-14; k++) {
+      const secant = low - (atLow * (high - low)) / (atHigh - atLow);
+      const t = k % 3 === 2 || !(secant > low && secant < high) ? 0.5 * (low + high) : secant;
+      const value = this.slopeAlong(step, history, t);
+      if (value < 0) {
+        low = t;
+        atLow = value;
+      } else {
+        high = t;
+        atHigh = value;
+      }
+    }
+    for (let i = 0; i < x.length; i++) x[i] = trial[i] + high * (x[i] - trial[i]);
+  }
+
+  /** Derivative of the co-content along trial → x, at the share t of the way. */
+  private slopeAlong(step: StepLength, history: Float64Array, t: number): number {
+    const { x, trial, sources, nC, nL, nF } = this;
+    const voltage = (from: number, to: number): number =>
+      trial[from] - trial[to] + t * (x[from] - trial[from] - (x[to] - trial[to]));
+    const direction = (from: number, to: number): number =>
+      x[from] - trial[from] - (x[to] - trial[to]);
+    let sum = 0;
+    for (let i = 0; i < x.length - 1; i++) sum -= sources[i] * (x[i] - trial[i]);
+    for (let e = 0; e < nC; e++) {
+      sum +=
+        step.gC[e] * voltage(this.cFrom[e], this.cTo[e]) * direction(this.cFrom[e], this.cTo[e]);
+    }
+    for (let e = 0; e < nL; e++) {
+      const v =
+        voltage(this.lFrom[e], this.lTo[e]) +
+        this.lRatio[e] * voltage(this.lStarFrom[e], this.lStarTo[e]);
+      const dv =
+        direction(this.lFrom[e], this.lTo[e]) +
+        this.lRatio[e] * direction(this.lStarFrom[e], this.lStarTo[e]);
+      sum += step.gL[e] * v * dv;
+    }
+    for (let e = 0; e < this.nR; e++) {
+      const { rFrom, rTo } = this;
+      sum += this.rConductance[e] * voltage(rFrom[e], rTo[e]) * direction(rFrom[e], rTo[e]);
+    }
+    for (let e = 0; e < this.sFrom.length; e++) {
+      const { sFrom, sTo } = this;
+      sum += this.sConductance[e] * voltage(sFrom[e], sTo[e]) * direction(sFrom[e], sTo[e]);
+    }
+    for (let d = 0; d < this.piece.length; d++) {
+      const v = voltage(this.dFrom[d], this.dTo[d]);
+      const at = d < nF ? history[nC + nL + d] + step.a * v : v;
+      let p = this.piece[d];
+      while (at > this.pieceHigh[p]) p++;
+      while (at < this.pieceLow[p]) p--;
+      sum += (this.pieceSlope[p] * at + this.pieceOffset[p]) * direction(this.dFrom[d], this.dTo[d]);
+    }
+    return sum;
+  }
+
+  /** States at the end of the stage. */
+  private takeStates(step: StepLength, history: Float64Array, out: Float64Array): void {
+    const { x, nC, nL, nF, cFrom, cTo, lFrom, lTo, lStarFrom, lStarTo, lRatio } = this;
+    const { gC, kC, gL, wL, a } = step;
+    for (let e = 0; e < nC; e++) {
+      const old = history[e];
+      out[e] = old + kC[e] * gC[e] * (x[cFrom[e]] - x[cTo[e]] - old);
+    }
+    for (let e = 0; e < nL; e++) {
+      const v = x[lFrom[e]] - x[lTo[e]] + lRatio[e] * (x[lStarFrom[e]] - x[lStarTo[e]]);
+      out[nC + e] = wL[e] * history[nC + e] + gL[e] * v;
+    }
+    for (let d = 0; d < nF; d++) {
+      const i = nC + nL + d;
+      out[i] = history[i] + a * (x[this.dFrom[d]] - x[this.dTo[d]]);
+    }
+  }
+
+  /** Add this stage's powers × weight to the work and heat of the step. */
+  private addPowers(time: number, weight: number, out: Float64Array): void {
+    const { x, nC, nL, nF, nR, heat, deviceCurrent, piece, pieceSlope, pieceOffset } = this;
+    for (let d = 0; d < piece.length; d++) {
+      const v = x[this.dFrom[d]] - x[this.dTo[d]];
+      const p = piece[d];
+      const i = pieceSlope[p] * (d < nF ? out[nC + nL + d] : v) + pieceOffset[p];
+      deviceCurrent[d] = i;
+      if (d < nF) continue;
+      heat[this.dPart[d]] += weight * (v - this.dSource[d]) * i;
+      this.work -= weight * this.dSource[d] * i;
+    }
+    for (let e = 0; e < nR; e++) {
+      const v = x[this.rFrom[e]] - x[this.rTo[e]];
+      heat[this.rPart[e]] += weight * this.rConductance[e] * v * v;
+    }
+    for (let e = 0; e < nL; e++) {
+      const i = out[nC + e];
+      heat[this.lPart[e]] += weight * this.lResistance[e] * i * i;
+    }
+    for (let e = 0; e < nC; e++) {
+      const resistance = this.cResistance[e];
+      if (resistance === 0) continue;
+      const i = (x[this.cFrom[e]] - x[this.cTo[e]] - out[e]) / resistance;
+      heat[this.cPart[e]] += weight * resistance * i * i;
+    }
+    for (let e = 0; e < this.sFrom.length; e++) {
+      const emf = this.emf(e, time);
+      const i = this.sConductance[e] * (x[this.sFrom[e]] - x[this.sTo[e]] - emf);
+      heat[this.sPart[e]] += (weight * i * i) / this.sConductance[e];
+      this.work -= weight * emf * i;
+    }
+  }
+}
+
+function addDevices(stamps: Stamps, g: Float64Array, offset: number, values: Float64Array): void {
+  const { first, position, weight } = stamps;
+  for (let e = 0, p = 0; e < first.length - 1; e++) {
+    const conductance = g[offset + e];
+    for (const end = first[e + 1]; p < end; p++) values[position[p]] += weight[p] * conductance;
+  }
+}
