@@ -1,0 +1,41 @@
+/** The bands of the page; layout only. */
+import './page.css';
+import { FirstCaution } from './Cautions.tsx';
+import { DriveLine } from './drive/DriveLine.tsx';
+import { Lanes } from './lanes/Lanes.tsx';
+import { Ledger } from './ledger/Ledger.tsx';
+import { say, useNotice } from './notice.ts';
+import { PowerPath } from './power-path/PowerPath.tsx';
+import { Strip } from './Strip.tsx';
+
+function Notice() {
+  const message = useNotice((state) => state.message);
+  if (message === null) return null;
+  return (
+    <div className="note notice" role="alert">
+      <p>{message}</p>
+      <button type="button" className="link" onClick={() => say(null)}>
+        Dismiss
+      </button>
+    </div>
+  );
+}
+
+/** Strip, drive line, power path, lanes and ledger. */
+export function App() {
+  return (
+    <>
+      <Strip />
+      <FirstCaution />
+      <Notice />
+      <DriveLine />
+      <main>
+        <PowerPath />
+        <div className="bench">
+          <Lanes />
+          <Ledger />
+        </div>
+      </main>
+    </>
+  );
+}

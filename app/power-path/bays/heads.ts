@@ -1,0 +1,82 @@
+/** What stands under the head of each bay: the readings that belong to it, in one line. */
+import {
+  type Bay,
+  type Design,
+  formatQuantity,
+  READINGS,
+  type ReadingName,
+  type Readings,
+} from '../../../sim-core/index.ts';
+import { figureText } from '../../figure.ts';
+
+/** Parts joined by commas; what is not known yet is left out. */
+const list = (...parts: readonly (string | null)[]) => parts.filter((p) => p !== null).join(', ');
+
+/**
+ * The line under a bay's head.
+ * @param joints  mean potential of the joints of the stack, volts; null before there are any
+ * @param brief   keep to the first part, where there is little room
+ */
+export function headOf(
+  bay: Bay,
+  design: Design,
+  readings: Readings | null,
+  joints: readonly number[] | null,
+  brief: boolean,
+): string {
+  const read = (name: ReadingName, word = '') => {
+    const value = readings?.[name] ?? null;
+    return value === null ? null : figureText(value, READINGS[name].unit) + word;
+  };
+  const { tank, transformer, sections } = design;
+  const fitted = (symbol: string, value: number | null, unit: 'H' | 'F') =>
+    value === null ? null : `${symbol} ${formatQuantity(value, unit, 3)}`;
+
+  switch (bay) {
+    case 'supply':
+      return brief
+        ? (read('supplyCurrent') ?? '')
+        : list(read('busVoltage'), read('supplyCurrent'));
+    case 'bridge':
+      return brief
+        ? list(read('primaryPeak', ' peak'))
+        : list(read('primaryPeak', ' peak'), read('primaryRms', ' rms'));
+    case 'tank': {
+      const parts = [tank.seriesInductance, tank.seriesCapacitance, tank.parallelCapacitance];
+      const count = parts.filter((part) => part !== null).length;
+      if (count === 0) return brief ? 'none' : 'no part fitted';
+      if (brief || count > 1) return count === 1 ? '1 part' : `${count} parts`;
+      return list(
+        fitted('L', tank.seriesInductance, 'H'),
+        fitted('C', tank.seriesCapacitance, 'F'),
+        fitted('C', tank.parallelCapacitance, 'F'),
+      );
+    }
+    case 'transformer': {
+      const flux = readings?.fluxPeak ?? null;
+      const knee = transformer.kneeFluxLinkage;
+      if (flux === null) return '';
+      if (brief)
+        return knee === null
+          ? figureText(flux, 'Wb')
+          : `${((100 * flux) / knee).toFixed(0)} % of knee`;
+      return knee === null
+        ? `${figureText(flux, 'Wb')} peak`
+        : `${figureText(flux, 'Wb')} of ${formatQuantity(knee, 'Wb', 3)}`;
+    }
+    case 'stack': {
+      const n = sections.count;
+      const each = joints === null ? null : (joints[n] - joints[0]) / n;
+      const words = n === 1 ? '1 section' : `${n} in series`;
+      if (each === null) return words;
+      if (brief) return n === 1 ? figureText(each, 'V') : `${n} × ${figureText(each, 'V')}`;
+      return `${words}, ${figureText(each, 'V')}${n === 1 ? '' : ' each'}`;
+    }
+    case 'output':
+      return brief
+        ? list(read('percentageRipple'))
+        : list(read('percentageRipple', ' ripple'), read('ripplePeakToPeak', ' p-p'));
+    case 'load':
+      return brief ? list(read('outputCurrent')) : list(read('outputCurrent'), read('loadPower'));
+  }
+}
