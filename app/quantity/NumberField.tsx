@@ -1,13 +1,8 @@
 import { type KeyboardEvent, type PointerEvent, useRef } from 'react';
-import {
-  type CountField,
-  checkField,
-  formatQuantity,
-  type QuantityField,
-} from '../../sim-core/index.ts';
+import { type CountField, formatQuantity, type QuantityField } from '../../sim-core/index.ts';
 import { type Take, useAttempt } from './attempt.ts';
 import { FieldRow } from './FieldRow.tsx';
-import { parseQuantity } from './parse.ts';
+import { readNumber } from './readNumber.ts';
 import { type Pace, stepValue } from './step.ts';
 
 /** Digits that a field shows; what was typed with more stays in force in full. */
@@ -17,22 +12,6 @@ const TRAVEL = 4;
 
 const paceOf = (event: { shiftKey: boolean; altKey: boolean }): Pace =>
   event.shiftKey ? 'coarse' : event.altKey ? 'fine' : 'normal';
-
-/** The value that `typed` means for `field`, or the sentence that says why it means none. */
-function read(
-  field: QuantityField | CountField,
-  typed: string,
-): { value: number | null } | { problem: string } {
-  const optional = field.kind === 'quantity' && field.optional;
-  const absent = optional && typed.trim().toLowerCase() === field.absent.toLowerCase();
-  const value = absent ? null : parseQuantity(typed, field.kind === 'quantity' ? field.unit : '');
-  if (value !== null && typeof value === 'object') return value;
-  const problem = checkField(field, value);
-  if (problem === null) return { value };
-  // The two are a thousand million apart, and the likeliest slip of all.
-  const mixed = /\d ?[mM]/.test(typed) ? ' m is milli, M is mega.' : '';
-  return { problem: problem + mixed };
-}
 
 /**
  * A number with its unit, as people type it. Enter and leaving the field commit, Escape restores;
@@ -60,12 +39,12 @@ export function NumberField({
 
   const commit = () => {
     if (attempt.typed === null) return;
-    const meant = read(field, attempt.typed);
+    const meant = readNumber(field, attempt.typed);
     attempt.finish('problem' in meant ? meant.problem : onChange(meant.value));
   };
 
   const step = (steps: number, pace: Pace) => {
-    const meant = attempt.typed === null ? null : read(field, attempt.typed);
+    const meant = attempt.typed === null ? null : readNumber(field, attempt.typed);
     const from = (meant !== null && 'value' in meant ? meant.value : value) ?? field.default;
     // An absent part has no value to turn; it is typed first.
     if (from !== null) attempt.finish(onChange(stepValue(field, from, steps, pace)));

@@ -8,14 +8,16 @@ const DIGIT: Readonly<Record<Pace, number>> = { coarse: 1, normal: 2, fine: 3 };
 
 /** Power of ten of the digit that one step moves. */
 function stepPower(field: QuantityField, value: number, pace: Pace): number {
-  // From zero there is no digit to go by: take the default's, or a millionth of the range.
-  const scale = Math.abs(value) || Math.abs(field.default ?? 0) || field.max * 1e-6;
+  // Where a value may be 0 its steps must not shrink without end on the way there; from 0 itself
+  // there is no digit to go by, so the default's is taken.
+  const least = field.min > 0 ? 0 : field.max * 1e-6;
+  const scale = Math.max(Math.abs(value) || Math.abs(field.default ?? 0), least) || field.min;
   return Number(scale.toExponential().split('e')[1]) - DIGIT[pace];
 }
 
 /** `value`, `steps` grid lines of 10^power up or down, in correctly rounded decimals. */
 function onGrid(value: number, steps: number, power: number): number {
-  const lines = Number(`${value.toPrecision(15)}`) / Number(`1e${power}`);
+  const lines = value / Number(`1e${power}`);
   // Whoever stands between two lines goes to the next one first.
   const slack = 1e-6;
   const from = steps > 0 ? Math.floor(lines + slack) : Math.ceil(lines - slack);

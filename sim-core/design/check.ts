@@ -246,7 +246,7 @@ const byDefault = (field: Field) => field.default;
 
 function readVersion(raw: Plain): Outcome<number> {
   // Who writes a file by hand may leave the version out; it is then the first.
-  const version = own(raw, 'version') ?? 1;
+  const version = own(raw, 'version') === undefined ? 1 : own(raw, 'version');
   if (typeof version !== 'number' || !Number.isInteger(version) || version < 1) {
     return refuse(
       'version',
@@ -349,7 +349,7 @@ export function checkDesign(raw: unknown): Outcome<Design> {
 
   const groups: Record<string, Record<string, unknown>> = {};
   for (const name of GROUP_NAMES) {
-    const given = own(data, name) ?? {};
+    const given = own(data, name) === undefined ? {} : own(data, name);
     if (!isPlain(given)) {
       return refuse(name, `“${name}” must be a group of values; ${inWords(given)} was given.`);
     }
