@@ -6,17 +6,21 @@ import type { DetailColumns } from '../run/messages.ts';
 import { axisUnit, evenLimits, type Limits, limitsFromZero, NO_LIMITS } from './axis.ts';
 import { EDGE, type LaneState, laneOptions, painted, TIME_AXIS } from './options.ts';
 import { type Paint, readPaint } from './paint.ts';
-import { type LaneWords, samplesOf, type Trace, thin, valueAt } from './traces.ts';
+import { type LaneWords, nameOf, samplesOf, type Trace, thin, valueAt } from './traces.ts';
 
 /** Most samples a lane draws, each with a value for every trace. */
 export const MOST_SAMPLES = 2500;
 
-/** A knee this many times above the flux is told in words only: drawn, it would flatten the trace. */
-const KNEE_IN_VIEW = 4;
+/**
+ * A knee comes into view when it is at most this many times above the flux, and leaves it again
+ * further up: drawn, a far one would flatten the trace.
+ */
+const KNEE_COMES = 4;
+const KNEE_LEAVES = 8;
 
 /** Value of one trace at the cursor, in words. */
 interface ReadOut {
-  readonly label: string;
+  readonly name: string;
   readonly text: string;
 }
 
@@ -63,6 +67,8 @@ interface Properties {
   readonly words: LaneWords;
   /** Whether the time axis stands under this lane. */
   readonly timed: boolean;
+  /** Section (from 1) whose winding is shown. */
+  readonly section: number;
   /** What stands above the names. */
   readonly heading?: ReactNode;
   /** What stands below them. */
@@ -70,7 +76,7 @@ interface Properties {
   readonly ref: Ref<LaneHandle>;
 }
 
-export function Lane({ words, timed, heading, note, ref }: Properties) {
+export function Lane({ words, timed, section, heading, note, ref }: Properties) {
   const host = useRef<HTMLDivElement>(null);
   const units = useRef<(HTMLElement | null)[]>([]);
   const values = useRef<(HTMLElement | null)[]>([]);
@@ -89,30 +95,37 @@ export function Lane({ words, timed, heading, note, ref }: Properties) {
     const plot = new uPlot(laneOptions(words, state, timed), undefined, host.current!);
     let time: Float64Array = EMPTY;
     let samples: (Float64Array | null)[] = [];
+    let names: string[] = [];
+    let kneeInView = false;
 
-    /** Limits of one side, from the samples drawn on it. */
-    const limitsOf = (side: 'left' | 'right', previous: Limits): Limits => {
+    /** Limits of one side for the samples drawn on it; null stands for a trace without any. */
+    const limitsOf = (side: 'left' | 'right', drawn: (Float64Array | null)[]): Limits => {
       let least = 0;
       let greatest = 0;
-      words.traces.forEach((trace, i) => {
+      painted(words).forEach((trace, i) => {
         if (trace.side !== side) return;
-        for (const value of samples[i] ?? EMPTY) {
+        for (const value of drawn[i] ?? EMPTY) {
           if (value < least) least = value;
           else if (value > greatest) greatest = value;
         }
       });
       if (side === 'left' && state.knee !== null) {
-        const inView = state.knee <= KNEE_IN_VIEW * Math.max(-least, greatest);
-        if (inView) greatest = Math.max(greatest, state.knee);
+        const times = kneeInView ? KNEE_LEAVES : KNEE_COMES;
+        kneeInView = state.knee <= times * Math.max(-least, greatest);
+        if (kneeInView) greatest = Math.max(greatest, state.knee);
         else state.knee = null;
       }
-      return (words.fromZero ? limitsFromZero : evenLimits)(previous, least, greatest);
+      return (words.fromZero ? limitsFromZero : evenLimits)(state[side], least, greatest);
     };
 
     handle.current = {
       resize({ width, leftRoom, rightRoom, stretch }) {
         state.leftRoom = leftRoom;
         state.rightRoom = rightRoom;
+        painted(words).forEach((trace, i) => {
+          // uPlot takes dashes in the screen's own pixels.
+          plot.series[i + 1].dash = trace.dash?.map((length) => length * devicePixelRatio) ?? [];
+        });
         plot.setSize({
           width,
           height: Math.round(words.height * stretch) + 2 * EDGE + (timed ? TIME_AXIS - EDGE : 0),
@@ -125,30 +138,30 @@ export function Lane({ words, timed, heading, note, ref }: Properties) {
       draw(detail, section, knee) {
         time = detail?.time ?? EMPTY;
         samples = words.traces.map((trace) => detail && samplesOf(detail, trace, section));
-        state.knee = words.knee ? knee : null;
+        names = words.traces.map((trace) => nameOf(trace, section));
+        const known = painted(words).map((trace) => samples[words.traces.indexOf(trace)]);
+        const thinned = thin(
+          time,
+          known.filter((column) => column !== null),
+          MOST_SAMPLES,
+        );
+        let next = 0;
+        const drawn = known.map((column) => (column === null ? null : thinned.columns[next++]));
         state.empty = time.length === 0;
-        state.left = limitsOf('left', state.left);
-        state.right = limitsOf('right', state.right);
+        state.knee = words.knee ? knee : null;
+        state.left = limitsOf('left', drawn);
+        state.right = limitsOf('right', drawn);
         words.traces.forEach((trace, i) => {
           const { low, high } = state[trace.side];
           const unit = units.current[i];
-          const symbol = axisUnit(Math.max(-low, high), trace.unit).symbol;
+          const { symbol } = axisUnit(Math.max(-low, high), trace.unit);
           if (unit && unit.textContent !== symbol) unit.textContent = symbol;
         });
         const start = time[0] ?? 0;
         const span = time.length > 0 ? time[time.length - 1] - start : 0;
-        const drawn = painted(words).map((trace) => samples[words.traces.indexOf(trace)]);
-        const present = drawn.filter((column) => column !== null);
-        const thinned = thin(time, present, MOST_SAMPLES);
         const fromStart = thinned.time.map((t) => t - start);
-        const blank = drawn.some((column) => column === null)
-          ? new Array<null>(fromStart.length).fill(null)
-          : [];
-        let next = 0;
-        const data: uPlot.AlignedData = [
-          fromStart,
-          ...drawn.map((column) => (column === null ? blank : thinned.columns[next++])),
-        ];
+        const blank = () => new Array<null>(fromStart.length).fill(null);
+        const data: uPlot.AlignedData = [fromStart, ...drawn.map((column) => column ?? blank())];
         plot.batch(() => {
           plot.setData(data, false);
           plot.setScale('left', { min: state.left.low, max: state.left.high });
@@ -164,7 +177,7 @@ export function Lane({ words, timed, heading, note, ref }: Properties) {
           const text = known ? figureText(valueAt(time, column, at), trace.unit) : '';
           const output = values.current[i];
           if (output && output.textContent !== text) output.textContent = text;
-          return { label: trace.label, text };
+          return { name: names[i], text };
         });
       },
     };
@@ -208,7 +221,7 @@ export function Lane({ words, timed, heading, note, ref }: Properties) {
             <output
               className="lane-value"
               aria-live="off"
-              aria-label={`${trace.label} at the cursor`}
+              aria-label={`${nameOf(trace, section)} at the cursor`}
               ref={(element) => {
                 values.current[i] = element;
               }}

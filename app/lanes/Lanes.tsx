@@ -15,7 +15,7 @@ import { useFrame } from './frame.ts';
 import { History } from './History.tsx';
 import { Lane, type LaneHandle } from './Lane.tsx';
 import { readPaint } from './paint.ts';
-import { indexAt, LANES, meanOver, samplesOf } from './traces.ts';
+import { indexAt, LANES, meanOver, nameOf, samplesOf } from './traces.ts';
 
 /** Samples that Shift with an arrow key passes over. */
 const COARSE_STEP = 10;
@@ -105,8 +105,8 @@ export function Lanes() {
     flag.current?.setAttribute('aria-valuenow', String(Math.round(at * 1000) / 10));
     flag.current?.setAttribute('aria-valuetext', words[0]);
     eachLane((lane) => {
-      for (const { label, text } of lane.readAt(first + at * span)) {
-        if (text !== '') words.push(`${label} ${text}`);
+      for (const { name, text } of lane.readAt(first + at * span)) {
+        if (text !== '') words.push(`${name} ${text}`);
       }
     });
     return words.join('; ');
@@ -243,6 +243,7 @@ export function Lanes() {
             key={words.name}
             words={words}
             timed={i === LANES.length - 1}
+            section={section}
             ref={(handle) => {
               handles.current[i] = handle;
             }}
@@ -324,12 +325,16 @@ function WindowTable({ section }: { section: number }) {
             least = Math.min(least, value);
             greatest = Math.max(greatest, value);
           }
-          const name = trace.meanRemoved ? trace.label : trace.signal(section);
+          const name = nameOf(trace, section);
           return (
             <tr key={name}>
               <th scope="row">{name}</th>
               <td>{figureText(least, trace.unit, 4)}</td>
-              <td>{figureText(meanOver(detail.time, samples), trace.unit, 4)}</td>
+              <td>
+                {trace.meanRemoved
+                  ? 'removed'
+                  : figureText(meanOver(detail.time, samples), trace.unit, 4)}
+              </td>
               <td>{figureText(greatest, trace.unit, 4)}</td>
             </tr>
           );

@@ -114,15 +114,32 @@ export function setDetail(columns: DetailColumns): void {
   notify();
 }
 
+/** Changes of one value closer than this share of the time since rest are one mark. */
+const SOON = 0.05;
+
 /**
- * Mark a change made at the present end of the history ("bus 310 → 320 V"). Changes made before
- * another period is done share one mark, which keeps the latest label.
+ * One label for two changes in a row, if the second goes on where the first ended: "bus 310 V →
+ * 311 V", then "bus 311 V → 320 V", is "bus 310 V → 320 V". Null for changes of different values.
+ */
+function joined(first: string, second: string): string | null {
+  const [from, middle] = first.split(' → ');
+  const [again, to] = second.split(' → ');
+  if (middle === undefined || to === undefined || !again.endsWith(middle)) return null;
+  const subject = again.slice(0, again.length - middle.length);
+  return from.startsWith(subject) ? `${from} → ${to}` : null;
+}
+
+/**
+ * Mark a change made at the present end of the history ("bus 310 V → 320 V"). A value that is
+ * turned gives one mark, from where it was to where it is left. Changes made before another period
+ * is done share one mark, which keeps the latest label.
  */
 export function markHistory(label: string): void {
   const now = startOf(length);
-  marks = [...marks.filter((mark) => mark.time !== now), { time: now, label }].slice(
-    -MARK_CAPACITY,
-  );
+  const last = marks.at(-1);
+  const turned = last && now - last.time <= SOON * now ? joined(last.label, label) : null;
+  const kept = last && (turned !== null || last.time === now) ? marks.slice(0, -1) : marks;
+  marks = [...kept, { time: now, label: turned ?? label }].slice(-MARK_CAPACITY);
   notify();
 }
 

@@ -126,7 +126,6 @@ export function laneOptions(words: LaneWords, state: LaneState, timed: boolean):
           scale: trace.side,
           stroke: () => state.paint[trace.colour],
           width: trace.width,
-          dash: trace.dash ? [...trace.dash] : [],
           points: { show: false },
           // Whole pixels would turn a slow slope into a flight of steps.
           pxAlign: 0,

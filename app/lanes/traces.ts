@@ -129,6 +129,10 @@ export const LANES: readonly LaneWords[] = [
   },
 ];
 
+/** What a trace is called away from its lane. */
+export const nameOf = (trace: Trace, section: number): string =>
+  trace.meanRemoved ? trace.label.toLowerCase() : trace.signal(section);
+
 /** Mean over time of the straight lines between samples; a single sample is its own mean. */
 export function meanOver(time: Float64Array, values: Float64Array): number {
   const last = time.length - 1;
@@ -214,6 +218,10 @@ export function thin(
     for (const i of picked) if (i !== kept[kept.length - 1]) kept.push(i);
     first = last;
   }
-  const at = (from: Float64Array) => Float64Array.from(kept, (i) => from[i]);
+  const at = (from: Float64Array) => {
+    const left = new Float64Array(kept.length);
+    for (let i = 0; i < left.length; i += 1) left[i] = from[kept[i]];
+    return left;
+  };
   return { time: at(time), columns: columns.map(at) };
 }

@@ -71,14 +71,16 @@ export function Ledger() {
     <section className="ledger" aria-label="Ledger">
       <table>
         <caption>
-          <span className="ledger-title">Readings</span>{' '}
-          <span className="ledger-standing">{standing}</span>{' '}
-          <button type="button" className="ledger-copy" onClick={copy}>
-            Copy
-          </button>
-          <span role="status" className="ledger-told">
-            {told}
-          </span>
+          <div className="ledger-head">
+            <span className="ledger-title">Readings</span>{' '}
+            <span className="ledger-standing">{standing}</span>{' '}
+            <span role="status" className="ledger-told">
+              {told}
+            </span>
+            <button type="button" className="ledger-copy" onClick={copy}>
+              Copy
+            </button>
+          </div>
         </caption>
         <tbody>
           {OF_THE_PLANT.map((name, i) => (
@@ -88,8 +90,10 @@ export function Ledger() {
       </table>
       <table>
         <caption>
-          <span className="ledger-title">Engine</span>{' '}
-          <span className="ledger-standing">since rest</span>
+          <div className="ledger-head">
+            <span className="ledger-title">Engine</span>{' '}
+            <span className="ledger-standing">since rest</span>
+          </div>
         </caption>
         <tbody>
           {[...OF_THE_RUN].map((name) => (
@@ -146,7 +150,7 @@ function Row({ label, definition, apart, children }: RowProperties) {
             {label}
           </button>
         </th>
-        <td>{children === NONE ? <span title="no value yet">{NONE}</span> : children}</td>
+        <td aria-label={children === NONE ? 'no value yet' : undefined}>{children}</td>
       </tr>
       {open && (
         <tr className="ledger-definition">
