@@ -23,8 +23,9 @@ function example(id: string, about: string, raw: unknown): Example {
 
 /** Every example; the first is the demo that the page opens with. */
 export const EXAMPLES: readonly Example[] = [
-  // Eight doublers: 8 × 2 × 13 × 310 V = 64 kV before the drops. The load of 20 mA is carried by
-  // 8 A peak in the primary, and 54 µH of leakage and series inductor cost about 19 V of the bus.
+  // Eight doublers on a hard square wave: 8 × 2 × 10.5 × 310 V = 52 kV, and some 60 kV as the
+  // leakage rings with the windings' capacitance before each diode conducts. The charge of the
+  // stack, 5 J, comes out of the bus capacitor, whose supply gives no more than 8 A.
   example(
     'duct-cleaner',
     'Invented: a 60 kV supply for the air cleaner of a test duct, eight doublers driven hard at 22 kHz.',
@@ -32,7 +33,7 @@ export const EXAMPLES: readonly Example[] = [
       version: 1,
       name: 'Duct cleaner, test rig',
       notes:
-        'An invented scenario: 20 mA at 60 kV for an air cleaner in a test duct. The series capacitor only blocks direct current. The core stands its settled flux but is brushed by the first, full half cycle.',
+        'An invented scenario: 20 mA at 60 kV for an air cleaner in a test duct. The series capacitor only blocks direct current: with it in place, no width error of the bridge can make the flux walk.',
       supply: { voltage: 310, resistance: 0.15, currentLimit: 8, busCapacitance: 680e-6 },
       bridge: { frequency: 22e3, deadTime: 1e-6, switchKind: 'insulated-gate' },
       tank: {
@@ -51,7 +52,7 @@ export const EXAMPLES: readonly Example[] = [
       },
       sections: {
         count: 8,
-        ratio: 13,
+        ratio: 10.5,
         leakageInductance: 11e-3,
         resistance: 18,
         ownCapacitance: 18e-12,
@@ -62,8 +63,9 @@ export const EXAMPLES: readonly Example[] = [
       load: { kind: 'resistor', resistance: 3e6 },
     },
   ),
-  // Series inductor, series and parallel capacitor (the windings add about as much again):
-  // resonant near 42 kHz and driven above it, so that the switches turn on without voltage.
+  // Series inductor with series capacitor: 1/(2π√(358 µH × 68 nF)) = 32 kHz; with the parallel
+  // capacitor and the windings (37 nF) in series too: 54 kHz. The loaded peak lies between, and
+  // the drive above it, where the tank is inductive and the switches turn on without voltage.
   example(
     'centre-earth',
     'Invented: a resonant supply of ±50 kV for an electron-beam column, ten doublers about an earthed centre.',
@@ -74,16 +76,16 @@ export const EXAMPLES: readonly Example[] = [
         'An invented scenario: ten doublers with the middle joint earthed, 15 mA at 100 kV between the terminals, driven above the resonance of the tank.',
       supply: { voltage: 320, resistance: 0.1, currentLimit: 12, busCapacitance: 470e-6 },
       bridge: {
-        frequency: 50e3,
+        frequency: 51.5e3,
         deadTime: 300e-9,
         switchKind: 'field-effect',
         switchResistance: 0.06,
         outputCapacitance: 220e-12,
       },
       tank: {
-        seriesInductance: 280e-6,
+        seriesInductance: 350e-6,
         seriesInductorResistance: 0.3,
-        seriesCapacitance: 47e-9,
+        seriesCapacitance: 68e-9,
         seriesCapacitorResistance: 0.02,
         parallelCapacitance: 22e-9,
         parallelCapacitorResistance: 0.02,
@@ -98,7 +100,7 @@ export const EXAMPLES: readonly Example[] = [
       },
       sections: {
         count: 10,
-        ratio: 13,
+        ratio: 10,
         leakageInductance: 15e-3,
         resistance: 25,
         ownCapacitance: 8e-12,
@@ -110,8 +112,9 @@ export const EXAMPLES: readonly Example[] = [
       load: { kind: 'resistor', resistance: 6.8e6 },
     },
   ),
-  // One winding of 160 V × 34 = 5.4 kV and five stages: 10 × 5.4 kV before the drops. With
-  // u = I/(fC) = 1 mA/(30 kHz × 2.2 nF) = 15 V the ladder droops by some 95 u, 1.4 kV.
+  // One winding of 160 V × 22 = 3.5 kV and five stages: 35 kV, and half as much again because so
+  // light a load follows the crests of the ringing winding. u = I/(fC) = 1 mA/(30 kHz × 2.2 nF)
+  // = 15 V, of which five stages droop by some 95 u, 1.4 kV.
   example(
     'ladder',
     'Invented: a 50 kV supply for a small irradiator, one winding and a multiplier ladder of five stages.',
@@ -119,7 +122,7 @@ export const EXAMPLES: readonly Example[] = [
       version: 1,
       name: 'Small irradiator, ladder',
       notes:
-        'An invented scenario: one section of 5.4 kV and a half-wave multiplier ladder of five stages, 1 mA at about 50 kV.',
+        'An invented scenario: one section of 3.5 kV and a half-wave multiplier ladder of five stages, 1 mA at about 50 kV. While the ladder charges, the flux passes the knee of the core.',
       supply: { voltage: 160, resistance: 0.3, currentLimit: 3, busCapacitance: 220e-6 },
       bridge: {
         frequency: 30e3,
@@ -139,7 +142,7 @@ export const EXAMPLES: readonly Example[] = [
       },
       sections: {
         count: 1,
-        ratio: 34,
+        ratio: 22,
         leakageInductance: 20e-3,
         resistance: 60,
         ownCapacitance: 10e-12,
@@ -158,7 +161,8 @@ export const EXAMPLES: readonly Example[] = [
       load: { kind: 'resistor', resistance: 50e6 },
     },
   ),
-  // Six bridges at 12 V × 12 = 144 V each: some 0.9 kV, more where the windings ring.
+  // Six bridges at 12 V × 12 = 144 V each: 0.9 kV by the ratio, and more than twice that where
+  // nothing but a probe damps the ringing of the windings.
   example(
     'bench-12-volts',
     'Invented: an unknown transformer tried at 12 V, from a bench supply that stops at 1 A and cannot absorb.',
@@ -176,7 +180,7 @@ export const EXAMPLES: readonly Example[] = [
         busCapacitorResistance: 0.05,
       },
       bridge: {
-        frequency: 20e3,
+        frequency: 22e3,
         deadTime: 400e-9,
         switchKind: 'field-effect',
         switchResistance: 0.03,
@@ -184,17 +188,17 @@ export const EXAMPLES: readonly Example[] = [
       },
       tank: { seriesCapacitance: 10e-6, seriesCapacitorResistance: 0.01 },
       transformer: {
-        primaryResistance: 0.08,
+        primaryResistance: 0.15,
         primaryLeakage: 5e-6,
         magnetisingInductance: 1.8e-3,
         kneeFluxLinkage: null,
-        coreLossResistance: 1.5e3,
+        coreLossResistance: 800,
       },
       sections: {
         count: 6,
         ratio: 12,
         leakageInductance: 8e-3,
-        resistance: 15,
+        resistance: 40,
         ownCapacitance: 20e-12,
         screenCapacitance: 35e-12,
       },
