@@ -61,7 +61,7 @@ export function FirstCaution() {
       <p>
         <b>Working on this equipment can kill.</b> Lethal voltage, and charge that returns by
         itself: discharge, earth, and only then touch; interlocks and a second person. This page
-        predicts, it does not measure. More under Cautions.
+        predicts; it measures nothing.
       </p>
       <button
         type="button"

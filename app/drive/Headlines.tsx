@@ -1,16 +1,23 @@
 /** The four readings that stand in view all day. */
 import { READINGS, type ReadingName } from '../../sim-core/index.ts';
-import { figureOf } from '../figure.ts';
+import { figureOf, readingText } from '../figure.ts';
 import { useRun } from '../run/store.ts';
 
 const HEADLINES = [
-  { reading: 'outputVoltage', label: 'Output voltage' },
-  { reading: 'outputCurrent', label: 'Output current' },
-  { reading: 'primaryPeak', label: 'Primary peak' },
-  { reading: 'supplyPower', label: 'Supply power' },
-] as const satisfies readonly { reading: ReadingName; label: string }[];
+  { reading: 'outputVoltage', label: 'Output voltage', under: 'percentageRipple', word: 'ripple' },
+  { reading: 'outputCurrent', label: 'Output current', under: 'loadPower', word: 'load' },
+  { reading: 'primaryPeak', label: 'Primary peak', under: 'primaryRms', word: 'rms' },
+  { reading: 'supplyPower', label: 'Supply power', under: 'efficiency', word: 'efficient' },
+] as const satisfies readonly {
+  reading: ReadingName;
+  label: string;
+  /** The reading in the line below, with the word that follows it. */
+  under: ReadingName;
+  word: string;
+}[];
 
-function Headline({ reading, label }: { reading: ReadingName; label: string }) {
+function Headline({ reading, label, under, word }: (typeof HEADLINES)[number]) {
+  const below = useRun((run) => run.readings?.[under] ?? null);
   const value = useRun((run) => run.readings?.[reading] ?? null);
   const figure = value === null ? null : figureOf(value, READINGS[reading].unit);
   return (
@@ -27,6 +34,9 @@ function Headline({ reading, label }: { reading: ReadingName; label: string }) {
           </>
         )}
       </dd>
+      <dd className="lab" title={READINGS[under].definition}>
+        {below !== null && `${readingText(under, below)} ${word}`}
+      </dd>
     </div>
   );
 }
@@ -35,8 +45,8 @@ function Headline({ reading, label }: { reading: ReadingName; label: string }) {
 export function Headlines() {
   return (
     <dl className="headlines">
-      {HEADLINES.map(({ reading, label }) => (
-        <Headline key={reading} reading={reading} label={label} />
+      {HEADLINES.map((headline) => (
+        <Headline key={headline.reading} {...headline} />
       ))}
     </dl>
   );

@@ -13,7 +13,7 @@ const WORDS: Readonly<Record<State, string>> = {
 
 /** Shapes of the states, in a field 16 wide and 16 high. */
 const SHAPES: Readonly<Record<State, string>> = {
-  starting: 'M2 13H6',
+  starting: 'M2 13H14',
   running: 'M2 13C5 13 6 3 9 3S13 8 14 13',
   held: 'M5 3V13M11 3V13',
   settled: 'M2 13C4 4 6 4 8 4H14',

@@ -1,22 +1,17 @@
 /** The scale under a large number: where the value stands, and in proportion what comes out. */
 import { useCallback, useState } from 'react';
 import type { QuantityField } from '../../sim-core/index.ts';
-import { figureOf } from '../figure.ts';
+import { unitOf } from '../figure.ts';
 import { useRun } from '../run/store.ts';
 import { ticksBetween } from '../scale.ts';
 
 const AXIS = 18.5;
 /** Share of the value that the tape shows on either side of it. */
 const REACH = 0.11;
+/** Width from which the upper scale has room beside its words. */
+const LEAST_WIDTH = 190;
 /** Room for the words at the end of the upper scale. */
 const WORDS = 92;
-
-/** A part of the SI prefix table: what divides volts or hertz to the unit of the tape. */
-const PREFIXED: Readonly<Record<string, number>> = { µ: 1e-6, m: 1e-3, k: 1e3, M: 1e6 };
-
-function divisorOf(unit: string, base: string): number {
-  return PREFIXED[unit.slice(0, unit.length - base.length)] ?? 1;
-}
 
 /** A scale around `value`. With `ratio` it also carries the output, once the run has settled. */
 export function Tape({
@@ -35,19 +30,21 @@ export function Tape({
     observer.observe(element);
     return () => observer.disconnect();
   }, []);
+  const wide = width >= LEAST_WIDTH;
   const perValue = useRun((run) => {
     const out = run.readings?.outputVoltage ?? null;
-    return ratio && run.state === 'settled' && out !== null && value > 0 ? out / value : null;
+    return ratio && wide && run.state === 'settled' && out !== null && value > 0
+      ? out / value
+      : null;
   });
 
   const half = Math.max(value * REACH, field.min * 2, ratio ? 1 : 0);
   const from = Math.max(field.min, value - half);
   const to = Math.min(field.max, value + half);
   const x = (v: number) => width / 2 + ((v - value) / half) * (width / 2);
-  const divisor = divisorOf(figureOf(Math.max(value, half), field.unit).unit, field.unit);
+  const { divisor } = unitOf(Math.max(value, half), field.unit);
   const below = ticksBetween(from, to, Math.max(2, Math.floor(width / 27)));
-  const output = perValue === null ? null : figureOf(perValue * value, 'V');
-  const outDivisor = output ? divisorOf(output.unit, 'V') : 1;
+  const output = perValue === null ? null : unitOf(perValue * value, 'V');
   const above =
     perValue === null
       ? []
@@ -78,7 +75,7 @@ export function Tape({
                 <g key={v}>
                   <path className="tick" d={`M${x(v / perValue)} ${AXIS}v-4`} />
                   <text className="m center" x={x(v / perValue)} y={12}>
-                    {Number((v / outDivisor).toPrecision(4))}
+                    {Number((v / (output?.divisor ?? 1)).toPrecision(4))}
                   </text>
                 </g>
               ),

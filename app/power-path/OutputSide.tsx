@@ -4,6 +4,7 @@ import { figureText } from '../figure.ts';
 import type { Plan } from './layout.ts';
 import { Capacitor, PLATE_GAP } from './symbols/Capacitor.tsx';
 import { Resistor } from './symbols/Resistor.tsx';
+import { Silent } from './symbols/Silent.tsx';
 import { CurrentSource } from './symbols/Source.tsx';
 import { Arrow, Joint, Terminal, Wire } from './symbols/Wire.tsx';
 
@@ -113,16 +114,16 @@ export function OutputSide({
   const parts = partsOf(design);
   const lead = design.output.lead === 'positive' ? top : foot;
   const rising = lead === top;
-  const weight = (part: Part) => (part.kind === 'series' ? 0.85 : 1);
+  const weight = (part: Part) => (part.kind === 'series' ? 0.7 : 1);
   const total = parts.reduce((sum, part) => sum + weight(part), 0) + 0.5;
   const from = Math.max(plan.stackEnd + 8, plan.output - 20);
   const unit = (plan.load - from) / total;
-  const words = plan.arrangement === 'wide' && unit >= 50;
+  const words = plan.arrangement === 'wide' && unit >= 56;
   const middle = (top + foot) / 2;
   const x = plan.load;
   let place = from;
   return (
-    <g aria-hidden="true">
+    <Silent>
       <Wire d={`M${plan.stackEnd} ${top}H${x}M${plan.stack} ${foot}H${x}`} />
       {parts.map((part) => {
         const at = place + (weight(part) * unit) / 2;
@@ -182,7 +183,11 @@ export function OutputSide({
       {plan.arrangement !== 'narrow' && (
         <>
           {loadWords(design.load).map((line, i) => (
-            <text key={line} x={x + 13} y={middle - 4 + i * 16}>
+            <text
+              key={line}
+              x={x + (design.load.kind === 'constant-current' ? 18 : 13)}
+              y={middle - 4 + i * 16}
+            >
               {line}
             </text>
           ))}
@@ -198,6 +203,6 @@ export function OutputSide({
           )}
         </>
       )}
-    </g>
+    </Silent>
   );
 }

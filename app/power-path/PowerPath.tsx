@@ -3,17 +3,23 @@ import type { Bay } from '../../sim-core/index.ts';
 import './path.css';
 import { type ReactNode, useCallback, useMemo, useState } from 'react';
 import { useDocument } from '../document/store.ts';
+import { unitOf } from '../figure.ts';
 import { useRun } from '../run/store.ts';
 import { BAYS, toggleBay, useOpenBay } from './bays/bays.ts';
 import { headOf } from './bays/heads.ts';
 import { ValueSheet } from './bays/ValueSheet.tsx';
-import { equalShare, type Plan, planPath, staircase } from './layout.ts';
+import { equalShare, LEAST_SPAN, type Plan, planPath, staircase } from './layout.ts';
 import { OutputSide } from './OutputSide.tsx';
-import { PrimarySide, RAILS } from './PrimarySide.tsx';
-import { Stack } from './Stack.tsx';
+import { PrimarySide } from './PrimarySide.tsx';
+import { Stack, StackGround } from './Stack.tsx';
 
 /** Heights of the drawing: heads above, room for the earth symbol and the figures below. */
 const HEADS = 56;
+/** The upper rail below that, and the distance of the rails. */
+const RAIL = 9;
+const RAILS = 100;
+/** Where the room under the primary side is free, its rails stand further apart. */
+const FREE_RAILS = 176;
 const STAIRS_TOP = 76;
 const BELOW = 52;
 const LEAST_HEIGHT = 366;
@@ -75,7 +81,7 @@ function useJoints(): readonly number[] | null {
 }
 
 /** The stack and what follows it. */
-function StackDrawing({ plan, height }: { plan: Plan; height: number }) {
+function StackDrawing({ plan, height, rails }: { plan: Plan; height: number; rails: number }) {
   const design = useDocument((state) => state.design);
   const joints = useJoints();
   const current = useRun((run) => run.readings?.outputCurrent ?? null);
@@ -88,7 +94,7 @@ function StackDrawing({ plan, height }: { plan: Plan; height: number }) {
     const known = joints ?? Array.from({ length: count + 1 }, () => 0);
     return staircase(known, earthed, box, Math.floor((foot - STAIRS_TOP) / 34));
   }, [joints, count, earthed, plan, foot]);
-  const limb = useMemo(() => ({ top: HEADS + 18, foot: HEADS + RAILS + 2 }), []);
+  const limb = useMemo(() => limbBeside(rails), [rails]);
 
   let potentials = null;
   if (joints && voltage !== null) {
@@ -100,15 +106,7 @@ function StackDrawing({ plan, height }: { plan: Plan; height: number }) {
   }
   return (
     <>
-      <Stack
-        design={design}
-        plan={plan}
-        stairs={stairs}
-        joints={joints}
-        top={STAIRS_TOP}
-        foot={foot}
-        limb={limb}
-      />
+      <StackGround plan={plan} stairs={stairs} joints={joints} foot={foot} limb={limb} />
       <OutputSide
         design={design}
         plan={plan}
@@ -116,13 +114,27 @@ function StackDrawing({ plan, height }: { plan: Plan; height: number }) {
         foot={stairs.joints[0].y}
         potentials={potentials}
       />
+      <Stack
+        design={design}
+        plan={plan}
+        stairs={stairs}
+        joints={joints}
+        top={STAIRS_TOP}
+        foot={foot}
+      />
     </>
   );
 }
 
-function PrimaryDrawing({ plan }: { plan: Plan }) {
+/** Height of the core's limb beside the primary winding. */
+const limbBeside = (rails: number) => ({
+  top: HEADS + RAIL + rails / 2 - 41,
+  foot: HEADS + RAIL + rails / 2 + 41,
+});
+
+function PrimaryDrawing({ plan, rails }: { plan: Plan; rails: number }) {
   const design = useDocument((state) => state.design);
-  return <PrimarySide design={design} plan={plan} top={HEADS + 9} />;
+  return <PrimarySide design={design} plan={plan} top={HEADS + RAIL} rails={rails} />;
 }
 
 /** A drawing at its own size, 1:1. */
@@ -136,13 +148,8 @@ function Drawing({
   children: ReactNode;
 }) {
   return (
-    <svg
-      className="drawing"
-      width={width}
-      height={height}
-      role="group"
-      aria-label="Circuit drawing"
-    >
+    // biome-ignore lint/a11y/noSvgWithoutTitle: a title would pop up over the whole drawing
+    <svg className="drawing" width={width} height={height}>
       {children}
     </svg>
   );
@@ -167,13 +174,16 @@ function SecondaryHeads({ plan }: { plan: Plan }) {
   const gap = narrow ? 8 : 20;
   const load = narrow ? plan.width - 64 : plan.load - (brief ? 24 : 40);
   const output = narrow ? load - 72 : plan.output;
-  const unit = useRun((run) => (run.joints ?? [0]).some((v) => Math.abs(v) >= 1e3)) ? ', kV' : '';
+  const joints = useJoints();
+  const highest = Math.max(...(joints ?? [0]).map(Math.abs));
   return (
     <>
       <Head bay="stack" x={narrow ? 0 : plan.scale + 14} end={output - gap} brief={narrow} />
       {plan.arrangement === 'wide' && (
         <span className="path-note" style={{ right: plan.width - output + gap }}>
-          height is potential to earth{unit}
+          {highest < LEAST_SPAN
+            ? 'no steady voltage: steps drawn equal'
+            : `height is potential to earth, ${unitOf(highest, 'V').unit}`}
         </span>
       )}
       <Head bay="output" x={output} end={load - gap} brief={brief} />
@@ -194,20 +204,20 @@ export function PowerPath() {
   if (size.width === 0) return <section className="path unmeasured" ref={measure} />;
 
   if (arrangement === 'narrow') {
-    const row = { ...plan, core: plan.width - 10 };
+    const limb = limbBeside(RAILS);
     return (
       <section className="path" aria-label="Power path" ref={measure}>
         <div className="path-row">
           <Drawing width={plan.width} height={PRIMARY_ROW}>
-            <path className="core" d={`M${row.core} ${HEADS + 18}h8v${RAILS - 16}h-8z`} />
-            <PrimaryDrawing plan={row} />
+            <path className="core" d={`M${plan.core} ${limb.top}h8V${limb.foot}h-8z`} />
+            <PrimaryDrawing plan={plan} rails={RAILS} />
           </Drawing>
           <PrimaryHeads plan={plan} end={plan.width} />
         </div>
         {open && PRIMARY.includes(open) && <ValueSheet bay={open} />}
         <div className="path-row">
           <Drawing width={plan.width} height={STACK_ROW}>
-            <StackDrawing plan={plan} height={STACK_ROW} />
+            <StackDrawing plan={plan} height={STACK_ROW} rails={RAILS} />
           </Drawing>
           <SecondaryHeads plan={plan} />
         </div>
@@ -217,13 +227,14 @@ export function PowerPath() {
   }
 
   const inset = arrangement === 'wide';
+  const rails = inset && open ? RAILS : FREE_RAILS;
   const height = inset ? Math.max(LEAST_HEIGHT, size.height) : LEAST_HEIGHT;
   return (
     <section className="path" aria-label="Power path" ref={measure}>
       <div className="path-row" style={inset ? { position: 'absolute', inset: 0 } : undefined}>
         <Drawing width={plan.width} height={height}>
-          <PrimaryDrawing plan={plan} />
-          <StackDrawing plan={plan} height={height} />
+          <PrimaryDrawing plan={plan} rails={rails} />
+          <StackDrawing plan={plan} height={height} rails={rails} />
         </Drawing>
         <PrimaryHeads plan={plan} end={plan.core + (inset ? 36 : 24)} />
         <SecondaryHeads plan={plan} />

@@ -7,13 +7,22 @@ import { Capacitor, PLATE_GAP } from './symbols/Capacitor.tsx';
 import { Coil, PolarityDot } from './symbols/Coil.tsx';
 import { Earth } from './symbols/Earth.tsx';
 import { Resistor } from './symbols/Resistor.tsx';
+import { Silent } from './symbols/Silent.tsx';
 import { VoltageSource } from './symbols/Source.tsx';
 import { Switch } from './symbols/Switch.tsx';
 import { Arrow, Joint, Wire } from './symbols/Wire.tsx';
 
-/** Height of the drawing from its upper to its lower rail. */
-export const RAILS = 100;
 const SWITCH = 30;
+/** Half the distance between the two wires to the primary. */
+const WIRES = 9;
+
+/** What every part of the side is drawn from: the upper rail is at `top`, the lower `rails` below. */
+interface SideProps {
+  readonly design: Design;
+  readonly plan: Plan;
+  readonly top: number;
+  readonly rails: number;
+}
 
 /** What a part is called and its value, above it. */
 function Part({
@@ -69,12 +78,12 @@ function Across({
   );
 }
 
-function Supply({ design, plan, top }: { design: Design; plan: Plan; top: number }) {
+function Supply({ design, plan, top, rails }: SideProps) {
   const narrow = plan.arrangement === 'narrow';
   const wide = plan.arrangement === 'wide';
   const { busCapacitance, earthing, currentLimit } = design.supply;
-  const foot = top + RAILS;
-  const middle = top + RAILS / 2;
+  const foot = top + rails;
+  const middle = top + rails / 2;
   const r = narrow ? 10 : 13;
   const x = plan.supply + r + (wide ? 2 : 0.5);
   const resistor = x + (narrow ? 21 : 34);
@@ -102,8 +111,8 @@ function Supply({ design, plan, top }: { design: Design; plan: Plan; top: number
           {busCapacitance === null ? (
             <>
               <Wire d={`M${capacitor} ${top}V${foot}`} />
-              <Resistor x={capacitor} y={top + RAILS / 4} length={20} upright />
-              <Resistor x={capacitor} y={foot - RAILS / 4} length={20} upright />
+              <Resistor x={capacitor} y={top + rails / 4} length={20} upright />
+              <Resistor x={capacitor} y={foot - rails / 4} length={20} upright />
             </>
           ) : (
             <>
@@ -131,9 +140,11 @@ function Supply({ design, plan, top }: { design: Design; plan: Plan; top: number
   );
 }
 
-function Bridge({ design, plan, top }: { design: Design; plan: Plan; top: number }) {
+function Bridge({ design, plan, top, rails }: SideProps) {
   const narrow = plan.arrangement === 'narrow';
-  const foot = top + RAILS;
+  const foot = top + rails;
+  const upper = top + rails / 2 - WIRES;
+  const lower = top + rails / 2 + WIRES;
   const room = plan.tank - plan.bridge;
   const a = plan.bridge + (narrow ? 28 : Math.min(40, room * 0.27));
   const b = a + Math.min(72, room * 0.45);
@@ -150,29 +161,29 @@ function Bridge({ design, plan, top }: { design: Design; plan: Plan; top: number
       ))}
       <Joint x={a} y={top} />
       <Joint x={a} y={foot} />
-      <Joint x={a} y={top + 41} />
-      <Joint x={b} y={top + 59} />
-      <Wire d={`M${a} ${top + 41}H${plan.tank}M${b} ${top + 59}H${plan.tank}`} />
+      <Joint x={a} y={upper} />
+      <Joint x={b} y={lower} />
+      <Wire d={`M${a} ${upper}H${plan.tank}M${b} ${lower}H${plan.tank}`} />
       {!narrow && (
         <>
-          <text className="b end" x={a - 9} y={top + 45}>
+          <text className="b end" x={a - 9} y={upper + 4}>
             A
           </text>
-          <text className="b end" x={b - 9} y={top + 63}>
+          <text className="b end" x={b - 9} y={lower + 4}>
             B
           </text>
         </>
       )}
-      <Arrow x={plan.tank - (narrow ? 4 : 14)} y={top + 41} />
+      <Arrow x={plan.tank - (narrow ? 4 : 14)} y={upper} />
     </>
   );
 }
 
-function Tank({ design, plan, top }: { design: Design; plan: Plan; top: number }) {
+function Tank({ design, plan, top, rails }: SideProps) {
   const narrow = plan.arrangement === 'narrow';
   const { seriesInductance, seriesCapacitance, parallelCapacitance } = design.tank;
-  const y = top + 41;
-  const back = top + 59;
+  const y = top + rails / 2 - WIRES;
+  const back = top + rails / 2 + WIRES;
   const end = plan.transformer;
   const value = (v: number, unit: 'H' | 'F') => (narrow ? null : formatQuantity(v, unit, 3));
   const room = end - plan.tank;
@@ -220,18 +231,20 @@ function Tank({ design, plan, top }: { design: Design; plan: Plan; top: number }
   );
 }
 
-function Primary({ design, plan, top }: { design: Design; plan: Plan; top: number }) {
+function Primary({ design, plan, top, rails }: SideProps) {
   const narrow = plan.arrangement === 'narrow';
   const x = plan.core - 14;
   const lead = x - (narrow ? 10 : 12);
+  const upper = top + rails / 2 - WIRES;
+  const lower = top + rails / 2 + WIRES;
   const r = 6;
-  const head = top + RAILS / 2 - 6 * r;
+  const head = top + rails / 2 - 6 * r;
   const foot = head + 12 * r;
   const ratio = formatQuantity(design.sections.ratio, '', 3);
   return (
     <>
       <Wire
-        d={`M${plan.transformer} ${top + 41}H${lead}V${head}H${x}M${plan.transformer} ${top + 59}H${lead}V${foot}H${x}`}
+        d={`M${plan.transformer} ${upper}H${lead}V${head}H${x}M${plan.transformer} ${lower}H${lead}V${foot}H${x}`}
       />
       <Coil x={x} y={head} turns={6} r={r} upright />
       <PolarityDot x={x - 4} y={head + 6} />
@@ -243,22 +256,14 @@ function Primary({ design, plan, top }: { design: Design; plan: Plan; top: numbe
   );
 }
 
-/** From the supply to the primary, between two rails; `top` is the height of the upper rail. */
-export const PrimarySide = memo(function PrimarySide({
-  design,
-  plan,
-  top,
-}: {
-  design: Design;
-  plan: Plan;
-  top: number;
-}) {
+/** From the supply to the primary, between two rails. */
+export const PrimarySide = memo(function PrimarySide(props: SideProps) {
   return (
-    <g aria-hidden="true">
-      <Supply design={design} plan={plan} top={top} />
-      <Bridge design={design} plan={plan} top={top} />
-      <Tank design={design} plan={plan} top={top} />
-      <Primary design={design} plan={plan} top={top} />
-    </g>
+    <Silent>
+      <Supply {...props} />
+      <Bridge {...props} />
+      <Tank {...props} />
+      <Primary {...props} />
+    </Silent>
   );
 });

@@ -88,7 +88,10 @@ function Rung({
     <>
       <Wire d={`M${from} ${y}H${start}M${end} ${y}H${to}`} />
       <Coil x={start} y={y} turns={turns} r={r} />
-      <PolarityDot x={reversed ? start + 1 : end - 1} y={y - r - 3.5} />
+      <PolarityDot
+        x={reversed ? Math.max(start + 1, from + 9) : Math.min(end - 1, to - 9)}
+        y={y - r - 3.5}
+      />
     </>
   );
 }
@@ -197,8 +200,8 @@ function Ladder({ step, stages, reversed }: { step: Step; stages: number; revers
       {Array.from({ length: stages - 1 }, (_, i) => {
         const joint = foot - (i + 0.5) * stage;
         return (
-          // biome-ignore lint/suspicious/noArrayIndexKey: equal stages in a fixed order
           <Capacitors
+            // biome-ignore lint/suspicious/noArrayIndexKey: equal stages in a fixed order
             key={i}
             x={coupling}
             head={joint - stage}

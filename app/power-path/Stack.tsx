@@ -7,11 +7,12 @@ import { type KeyboardEvent, memo, type PointerEvent, useMemo, useRef } from 're
 import type { Design } from '../../sim-core/index.ts';
 import { setValue } from '../document/actions.ts';
 import { applyEdit, useDocument } from '../document/store.ts';
-import { figureOf } from '../figure.ts';
+import { unitOf } from '../figure.ts';
 import { useRun } from '../run/store.ts';
 import { legible, nearestJoint, type Plan, runsOf, type Staircase, type Step } from './layout.ts';
 import { SectionCircuit } from './SectionCircuit.tsx';
 import { Earth } from './symbols/Earth.tsx';
+import { Silent } from './symbols/Silent.tsx';
 import { Wire } from './symbols/Wire.tsx';
 
 /** Thickness of the core's tone, and how far it lies below a stack that stands on earth. */
@@ -23,6 +24,17 @@ const REACH = 24;
 function moveEarth(joint: number): void {
   const { design } = useDocument.getState();
   if (design.stack.joint !== joint) applyEdit(setValue(design, 'stack', 'joint', joint));
+}
+
+/** The unit that suits the potentials of a stack, and figures in it. */
+function potentialScale(joints: readonly number[] | null) {
+  const { unit, divisor } = unitOf(Math.max(...(joints ?? [0]).map(Math.abs)), 'V');
+  const figure = (volts: number) => {
+    const value = Math.abs(volts) / divisor;
+    const decimals = value >= 100 ? 0 : value >= 10 ? 1 : 2;
+    return `${volts < 0 ? '−' : ''}${value.toFixed(decimals)}`;
+  };
+  return { unit, divisor, figure };
 }
 
 /** Top of the core's tone: under the stairs where they stand on earth, through them elsewhere. */
@@ -55,15 +67,7 @@ function Core({
   );
 }
 
-function Scale({
-  plan,
-  stairs,
-  prefix,
-}: {
-  plan: Plan;
-  stairs: Staircase;
-  prefix: { unit: string; divisor: number };
-}) {
+function Scale({ plan, stairs, divisor }: { plan: Plan; stairs: Staircase; divisor: number }) {
   const right = plan.stackEnd + 8;
   return stairs.ticks.map(({ volts, y, major }) =>
     major ? (
@@ -71,13 +75,21 @@ function Scale({
         <path className={volts === 0 ? 'zero' : 'grid'} d={`M${plan.scale + 4} ${y}H${right}`} />
         <text className={volts === 0 ? 'b end' : 'm end'} x={plan.scale} y={y + 4}>
           {volts < 0 ? '−' : ''}
-          {Number((Math.abs(volts) / prefix.divisor).toPrecision(6))}
+          {Number((Math.abs(volts) / divisor).toPrecision(6))}
         </text>
       </g>
     ) : (
       <path key={volts} className="tick" d={`M${plan.scale + 4} ${y}h4`} />
     ),
   );
+}
+
+/** The gap between a step and the core, where there is one: what the insulation has to hold. */
+function gapTo(core: number, step: Step): string {
+  const x = step.x + step.width / 2;
+  if (core > step.low) return `M${x} ${step.low}V${core}`;
+  if (core + CORE < step.high) return `M${x} ${step.high}V${core + CORE}`;
+  return '';
 }
 
 /** One section as a plain box on its tread; solid when it differs from its fellows. */
@@ -142,20 +154,23 @@ function Loupe({
   plan,
   top,
   section,
+  ends,
 }: {
   design: Design;
   stairs: Staircase;
   plan: Plan;
   top: number;
   section: number;
+  /** Potentials of its lower and its upper joint, in figures. */
+  ends: readonly [string, string] | null;
 }) {
   const small = plan.arrangement === 'narrow';
   const width = small ? 58 : 108;
   const height = small ? 54 : 68;
   const x = plan.stack + (small ? 4 : 12);
-  const low = top + 24 + height;
+  const low = top + 20 + height;
   const step = stairs.steps[section - 1];
-  const edge = x + width + (small ? 6 : 12);
+  const edge = x + width + (small ? 6 : 40);
   const seen = Math.min(step.low, step.high);
   const foot = Math.max(step.low, step.high);
   const target = step.x + step.width / 2 - 5;
@@ -165,7 +180,7 @@ function Loupe({
       {clear && (
         <path className="fan" d={`M${edge} ${top}L${target} ${seen}V${foot}L${edge} ${low + 6}z`} />
       )}
-      <path className="bracket" d={`M${edge} ${top}V${low + 6}`} />
+      {clear && <path className="bracket" d={`M${edge} ${top}V${low + 6}`} />}
       <text className="b" x={x} y={top + 11}>
         {small ? `section ${section}` : `section ${section}, drawn large`}
       </text>
@@ -174,6 +189,16 @@ function Loupe({
         rectifier={design.rectifier}
         reversed={isReversed(design, section)}
       />
+      {ends && !small && (
+        <>
+          <text className="m" x={x + width + 4} y={low + 4}>
+            {ends[0]}
+          </text>
+          <text className="b" x={x + width + 4} y={low - height + 4}>
+            {ends[1]}
+          </text>
+        </>
+      )}
     </g>
   );
 }
@@ -236,6 +261,47 @@ function EarthHandle({
   );
 }
 
+/** What lies under the stack: the core at its own potential, the scale, the gaps to the core. */
+export function StackGround({
+  plan,
+  stairs,
+  joints,
+  foot,
+  limb,
+}: {
+  plan: Plan;
+  stairs: Staircase;
+  joints: readonly number[] | null;
+  /** Foot of the room of the stairs; top and foot of the core's limb at the primary. */
+  foot: number;
+  limb: { top: number; foot: number };
+}) {
+  const { divisor } = potentialScale(joints);
+  const narrow = plan.arrangement === 'narrow';
+  const core = coreTop(stairs, foot);
+  return (
+    <Silent>
+      <Core plan={plan} stairs={stairs} foot={foot} limb={limb} />
+      <Scale plan={plan} stairs={stairs} divisor={divisor} />
+      {narrow ? (
+        core > foot && (
+          <text className="m" x={plan.stackEnd + 5} y={core + CORE}>
+            core
+          </text>
+        )
+      ) : (
+        <text className="m end" x={plan.core + 9} y={Math.min(limb.top, core) - 6}>
+          core, earthed
+        </text>
+      )}
+      {!stairs.folded &&
+        stairs.steps.map((step) => (
+          <path key={step.section} className="drop" d={gapTo(core, step)} />
+        ))}
+    </Silent>
+  );
+}
+
 /** The stack, from joint 0 at the left to its positive terminal at the right. */
 export const Stack = memo(function Stack({
   design,
@@ -244,17 +310,15 @@ export const Stack = memo(function Stack({
   joints,
   foot,
   top,
-  limb,
 }: {
   design: Design;
   plan: Plan;
   stairs: Staircase;
   /** Mean potentials of the joints, volts; null before there are any. */
   joints: readonly number[] | null;
-  /** Top and foot of the room of the stairs, and of the core's limb at the primary. */
+  /** Top and foot of the room of the stairs. */
   top: number;
   foot: number;
-  limb: { top: number; foot: number };
 }) {
   const hits = useRef<SVGRectElement>(null);
   const shown = useRun((run) => run.section);
@@ -263,17 +327,7 @@ export const Stack = memo(function Stack({
   const floating = design.stack.earth === 'floating';
   const narrow = plan.arrangement === 'narrow';
   const wide = plan.arrangement === 'wide';
-  const highest = Math.max(...(joints ?? [0]).map(Math.abs));
-  const { unit } = figureOf(highest, 'V');
-  const prefix = {
-    unit,
-    divisor: unit === 'kV' ? 1e3 : unit === 'mV' ? 1e-3 : unit === 'V' ? 1 : 1e6,
-  };
-  const figure = (volts: number) => {
-    const value = Math.abs(volts) / prefix.divisor;
-    return `${volts < 0 ? '−' : ''}${value.toFixed(value >= 100 ? 0 : value >= 10 ? 1 : 2)}`;
-  };
-  const core = coreTop(stairs, foot);
+  const { unit, figure } = potentialScale(joints);
   const jointAt = (event: PointerEvent) => {
     const box = hits.current?.getBoundingClientRect();
     return nearestJoint(stairs, event.clientX - (box?.left ?? 0) + plan.stack - REACH);
@@ -283,28 +337,20 @@ export const Stack = memo(function Stack({
 
   return (
     <g>
-      <g aria-hidden="true">
-        <Core plan={plan} stairs={stairs} foot={foot} limb={limb} />
-        <Scale plan={plan} stairs={stairs} prefix={prefix} />
-        <text className="m halo" x={plan.stackEnd + 6} y={core + CORE + (narrow ? 12 : 0)}>
-          {narrow ? 'core' : 'core, earthed'}
-        </text>
-        {!stairs.folded &&
-          stairs.steps.map((step) => {
-            const x = step.x + step.width / 2;
-            const from = core > step.low ? (step.low + step.high) / 2 + 4 : step.high;
-            return (
-              Math.abs(from - core) > 10 && (
-                <path
-                  key={step.section}
-                  className="drop"
-                  d={`M${x} ${from}V${core > from ? core : core + CORE}`}
-                />
-              )
-            );
-          })}
+      <Silent>
         {stairs.folded && (
-          <Loupe design={design} stairs={stairs} plan={plan} top={top - 2} section={section} />
+          <Loupe
+            design={design}
+            stairs={stairs}
+            plan={plan}
+            top={top + 12}
+            section={section}
+            ends={
+              joints && stairs.scaled
+                ? [figure(joints[section - 1]), figure(joints[section])]
+                : null
+            }
+          />
         )}
         {stairs.steps.map((step) => {
           const open = !stairs.folded && legible(step);
@@ -348,15 +394,10 @@ export const Stack = memo(function Stack({
         })}
         {!stairs.folded && joints && stairs.scaled && !narrow && (
           <text className="m" x={plan.stackEnd + 6} y={foot + 46}>
-            {prefix.unit} to core, mean
+            {unit} to core, mean
           </text>
         )}
-        {stairs.folded && <Runs marks={marks} stairs={stairs} y={foot + 30} />}
-        {!stairs.scaled && (
-          <text className="m halo end" x={plan.stackEnd} y={foot - 6}>
-            no steady voltage: steps drawn equal
-          </text>
-        )}
+        {stairs.folded && <Runs marks={marks} stairs={stairs} y={foot + 32} />}
         {!floating &&
           stairs.joints.map(
             ({ x, y }, j) =>
@@ -368,7 +409,7 @@ export const Stack = memo(function Stack({
             floating
           </text>
         )}
-      </g>
+      </Silent>
       {!floating && (
         <>
           <rect

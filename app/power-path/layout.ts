@@ -38,7 +38,7 @@ export function planPath(width: number, sections: number): Plan {
   const stackEnd = (stack: number, room: number) => stack + Math.min(room, sections * WIDEST_STEP);
   if (width >= WIDE) {
     const load = width - 88;
-    const right = Math.max(268, Math.min(340, width * 0.2));
+    const right = Math.max(306, Math.min(360, width * 0.21));
     return {
       arrangement: 'wide',
       supply: 0,
@@ -63,10 +63,10 @@ export function planPath(width: number, sections: number): Plan {
       tank: 204,
       transformer: 310,
       core: 388,
-      scale: 424,
-      stack: 462,
-      stackEnd: stackEnd(462, load - 180 - 462),
-      output: load - 158,
+      scale: 420,
+      stack: 456,
+      stackEnd: stackEnd(456, load - 140 - 456),
+      output: load - 122,
       load,
       width,
     };
@@ -123,12 +123,12 @@ export interface Staircase {
 /** From this many sections on, steps are plain boxes. */
 const FOLD_FROM = 9;
 /** Smallest step in which a circuit can be read. */
-const LEAST_WIDTH = 32;
+const LEAST_WIDTH = 39;
 const LEAST_HEIGHT = 22;
 /** How far the scale runs on beyond the stairs, pixels. */
 const BEYOND = { above: 18, below: 6 };
 /** Below this span there is no voltage to draw; steps are then drawn equal. */
-const LEAST_SPAN = 1e-3;
+export const LEAST_SPAN = 1e-3;
 
 /**
  * Joint potentials of a stack whose sections share the voltage equally.
@@ -180,7 +180,11 @@ export function staircase(
     earth: yOf(0),
     scaled,
     ticks: scaled
-      ? ticksBetween(lowest - BEYOND.below / perVolt, highest + BEYOND.above / perVolt, figures).map(({ value, major }) => ({
+      ? ticksBetween(
+          lowest - BEYOND.below / perVolt,
+          highest + BEYOND.above / perVolt,
+          figures,
+        ).map(({ value, major }) => ({
           volts: value,
           y: yOf(value),
           major,

@@ -29,7 +29,7 @@ function Row({ group, name, field }: { group: GroupName; name: string; field: Fi
 export function ValueSheet({ bay }: { bay: Bay }) {
   const { title, groups } = BAYS[bay];
   return (
-    <div className="sheet" id="bay-sheet" role="group" aria-label={`${title}, values`}>
+    <section className="sheet" id="bay-sheet" aria-label={`${title}, values`}>
       <div className="sheet-columns" key={bay}>
         {groups.map(({ group, heading }) => (
           <div className="sheet-group" key={group}>
@@ -41,6 +41,6 @@ export function ValueSheet({ bay }: { bay: Bay }) {
           </div>
         ))}
       </div>
-    </div>
+    </section>
   );
 }

@@ -3,11 +3,10 @@ import {
   type Bay,
   type Design,
   formatQuantity,
-  READINGS,
   type ReadingName,
   type Readings,
 } from '../../../sim-core/index.ts';
-import { figureText } from '../../figure.ts';
+import { figureText, readingText } from '../../figure.ts';
 
 /** Parts joined by commas; what is not known yet is left out. */
 const list = (...parts: readonly (string | null)[]) => parts.filter((p) => p !== null).join(', ');
@@ -26,11 +25,11 @@ export function headOf(
 ): string {
   const read = (name: ReadingName, word = '') => {
     const value = readings?.[name] ?? null;
-    return value === null ? null : figureText(value, READINGS[name].unit) + word;
+    return value === null ? null : readingText(name, value) + word;
   };
   const { tank, transformer, sections } = design;
-  const fitted = (symbol: string, value: number | null, unit: 'H' | 'F') =>
-    value === null ? null : `${symbol} ${formatQuantity(value, unit, 3)}`;
+  const fitted = (value: number | null, unit: 'H' | 'F') =>
+    value === null ? null : formatQuantity(value, unit, 3);
 
   switch (bay) {
     case 'supply':
@@ -42,15 +41,13 @@ export function headOf(
         ? list(read('primaryPeak', ' peak'))
         : list(read('primaryPeak', ' peak'), read('primaryRms', ' rms'));
     case 'tank': {
-      const parts = [tank.seriesInductance, tank.seriesCapacitance, tank.parallelCapacitance];
-      const count = parts.filter((part) => part !== null).length;
-      if (count === 0) return brief ? 'none' : 'no part fitted';
-      if (brief || count > 1) return count === 1 ? '1 part' : `${count} parts`;
-      return list(
-        fitted('L', tank.seriesInductance, 'H'),
-        fitted('C', tank.seriesCapacitance, 'F'),
-        fitted('C', tank.parallelCapacitance, 'F'),
-      );
+      const parts = [
+        fitted(tank.seriesInductance, 'H'),
+        fitted(tank.seriesCapacitance, 'F'),
+        fitted(tank.parallelCapacitance, 'F'),
+      ].filter((part) => part !== null);
+      if (parts.length === 0) return brief ? 'none' : 'no part fitted';
+      return parts.length < 3 ? list(...parts) : `${parts.length} parts`;
     }
     case 'transformer': {
       const flux = readings?.fluxPeak ?? null;
