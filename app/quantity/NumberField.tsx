@@ -10,6 +10,17 @@ const DIGITS = 6;
 /** Sideways travel of the pointer that makes one step, pixels. */
 const TRAVEL = 4;
 
+const plainDecimal = new Intl.NumberFormat('en', {
+  useGrouping: false,
+  maximumSignificantDigits: 15,
+});
+
+/**
+ * A number for ARIA, whose attributes know no powers of ten: 0.000000001, not 1e-9. It is text,
+ * as any attribute, though React's types ask for a number.
+ */
+const decimal = (value: number) => plainDecimal.format(value) as unknown as number;
+
 const paceOf = (event: { shiftKey: boolean; altKey: boolean }): Pace =>
   event.shiftKey ? 'coarse' : event.altKey ? 'fine' : 'normal';
 
@@ -96,8 +107,10 @@ export function NumberField({
     },
   };
 
+  const inForce = value === null ? '' : ` Still ${print(value)}.`;
+  const problem = attempt.problem === null ? null : attempt.problem + inForce;
   return (
-    <FieldRow field={field} place={place} problem={attempt.problem} scrub={scrub}>
+    <FieldRow field={field} place={place} problem={problem} scrub={scrub}>
       {(props) => (
         <input
           {...props}
@@ -111,9 +124,9 @@ export function NumberField({
           enterKeyHint="done"
           placeholder={absent}
           value={attempt.text}
-          aria-valuenow={value ?? undefined}
-          aria-valuemin={field.kind === 'quantity' && field.zero ? 0 : field.min}
-          aria-valuemax={field.max}
+          aria-valuenow={value === null ? undefined : decimal(value)}
+          aria-valuemin={field.kind === 'quantity' && field.zero ? 0 : decimal(field.min)}
+          aria-valuemax={decimal(field.max)}
           aria-valuetext={attempt.text === '' ? absent : attempt.text}
           onChange={(event) => attempt.type(event.currentTarget.value)}
           onKeyDown={onKeyDown}

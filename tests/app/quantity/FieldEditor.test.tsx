@@ -29,6 +29,8 @@ describe('the editor of every field', () => {
       for (const id of (/aria-describedby="([^"]+)"/.exec(markup)?.[1] ?? 'none').split(' ')) {
         expect(markup).toContain(`id="${id}"`);
       }
+      // WAI-ARIA 1.2: value attributes are decimal numbers, and 1e-9 is none.
+      expect(markup).not.toMatch(/aria-value(now|min|max)="[^"]*e/i);
       // The content-security policy admits no style in markup.
       expect(markup).not.toMatch(/ style=|<style/);
     },
