@@ -10,7 +10,7 @@ export {
   placesThatDiffer,
 } from './design/check.ts';
 export { formatQuantity, PREFIXES, takesPrefix } from './design/engineering.ts';
-export { EXAMPLES, type Example } from './design/examples.ts';
+export { EXAMPLES } from './design/examples.ts';
 export type {
   ChoiceField,
   CountField,
@@ -27,10 +27,7 @@ export {
   fieldOf,
   GROUPS,
   type GroupName,
-  MAX_SECTIONS,
   type SectionOverride,
-  TITLE_FIELDS,
-  type Values,
   WINDING_FIELDS,
   type WindingValues,
 } from './design/schema.ts';
