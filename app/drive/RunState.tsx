@@ -14,7 +14,7 @@ const WORDS: Readonly<Record<State, string>> = {
 /** Shapes of the states, in a field 16 wide and 16 high. */
 const SHAPES: Readonly<Record<State, string>> = {
   starting: 'M2 13H14',
-  running: 'M2 13C5 13 6 3 9 3S13 8 14 13',
+  running: 'M1 8C3 1 6 1 8 8S13 15 15 8',
   held: 'M5 3V13M11 3V13',
   settled: 'M2 13C4 4 6 4 8 4H14',
   failed: 'M3 3L13 13M13 3L3 13',

@@ -45,7 +45,7 @@ export function digitsOf(value: number, least: number, chosen: number): Digits {
   const own = value === 0 ? chosen : topPower(value);
   const first = Math.max(own, chosen);
   const exponent = Math.max(-6, Math.min(6, 3 * Math.floor(first / 3)));
-  const wanted = Math.min(own - least + 1, value === 0 ? own : lastPower(value));
+  const wanted = Math.min(first - least + 1, value === 0 ? own : lastPower(value));
   const bottom = Math.min(chosen, exponent, Math.max(first - MOST + 1, wanted));
   const decimals = Math.max(0, exponent - bottom);
   const text = (value / 10 ** exponent).toFixed(decimals);

@@ -76,9 +76,9 @@ export function planPath(width: number, sections: number): Plan {
   return {
     arrangement: 'narrow',
     supply: 0,
-    bridge: Math.round(width * 0.2),
-    tank: Math.round(width * 0.5),
-    transformer: Math.round(width * 0.77),
+    bridge: Math.round(width * 0.19),
+    tank: Math.round(width * 0.47),
+    transformer: Math.round(width * 0.72),
     core: width - 10,
     scale: 30,
     stack: 44,
