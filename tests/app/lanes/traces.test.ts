@@ -67,7 +67,7 @@ describe('thinning for the screen', () => {
           });
         },
       ),
-      { numRuns: 20, seed: 2 },
+      { numRuns: 20, seed: 2, endOnFailure: true },
     );
   });
 
