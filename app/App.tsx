@@ -12,12 +12,12 @@ function Notice() {
   const message = useNotice((state) => state.message);
   if (message === null) return null;
   return (
-    <div className="note notice" role="alert">
-      <p>{message}</p>
+    <aside className="note notice" aria-label="Note">
+      <p role="alert">{message}</p>
       <button type="button" className="link" onClick={() => say(null)}>
         Dismiss
       </button>
-    </div>
+    </aside>
   );
 }
 

@@ -57,7 +57,7 @@ export function FirstCaution() {
   const [read, setRead] = useState(wasRead);
   if (read) return null;
   return (
-    <div className="note notice caution">
+    <aside className="note notice" aria-label="Caution">
       <p>
         <b>Working on this equipment can kill.</b> Lethal voltage, and charge that returns by
         itself: discharge, earth, and only then touch; interlocks and a second person. This page
@@ -77,6 +77,6 @@ export function FirstCaution() {
       >
         I have read this
       </button>
-    </div>
+    </aside>
   );
 }

@@ -8,6 +8,7 @@ import { FieldEditor } from '../quantity/FieldEditor.tsx';
 import { useRun } from '../run/store.ts';
 import { Headlines } from './Headlines.tsx';
 import { RunState } from './RunState.tsx';
+import { REFUSAL_ID, useRefusal } from './refusal.ts';
 import { Turn } from './Turn.tsx';
 
 /** Values of the bridge that stand beside the two large ones. */
@@ -48,6 +49,17 @@ function ProblemNote() {
   );
 }
 
+/** Why a turned or typed value was refused. */
+function RefusalNote() {
+  const message = useRefusal((state) => state.message);
+  if (message === null) return null;
+  return (
+    <div className="note" id={REFUSAL_ID} role="alert">
+      {message}
+    </div>
+  );
+}
+
 /** The band that stays in view. */
 export function DriveLine() {
   const voltage = useDocument((state) => state.design.supply.voltage);
@@ -77,6 +89,7 @@ export function DriveLine() {
       </div>
       <RunState />
       <Headlines />
+      <RefusalNote />
       <ProblemNote />
     </section>
   );

@@ -8,6 +8,7 @@ import { setValue } from '../document/actions.ts';
 import { applyEdit, useDocument } from '../document/store.ts';
 import { parseQuantity } from '../quantity/parse.ts';
 import { digitsOf, stepDigit } from './digits.ts';
+import { REFUSAL_ID, refuse, useRefusal } from './refusal.ts';
 import { Tape } from './Tape.tsx';
 
 /** Pixels of vertical drag, and of wheel travel, to a step. */
@@ -32,43 +33,49 @@ function TypedValue({
   first: string;
   /** Takes the value; returns the sentence that refuses it, or null. */
   onCommit: (value: number) => string | null;
-  onClose: () => void;
+  /** Puts the number back; `keepFocus` gives it the focus as well. */
+  onClose: (keepFocus: boolean) => void;
 }) {
   const [text, setText] = useState(first);
-  const [problem, setProblem] = useState<string | null>(null);
-  const note = useId();
-  const commit = () => {
-    const value = parseQuantity(text, field.unit);
-    if (value === null) return onClose();
-    const refusal = typeof value === 'number' ? onCommit(value) : value.problem;
-    setProblem(refusal);
-    if (refusal === null) onClose();
+  const refused = useRefusal((state) => state.message !== null);
+  const meant = parseQuantity(text, field.unit);
+  const done = useRef(false);
+  const close = (keepFocus: boolean) => {
+    done.current = true;
+    onClose(keepFocus);
+  };
+  const commit = (keepFocus: boolean) => {
+    if (done.current) return;
+    if (meant === null) return close(keepFocus);
+    const message = typeof meant === 'number' ? onCommit(meant) : meant.problem;
+    refuse(message);
+    if (message === null) close(keepFocus);
   };
   return (
     <>
+      <span className="lab meant">
+        {typeof meant === 'number'
+          ? `means ${formatQuantity(meant, field.unit, 9)}`
+          : 'Enter takes it'}
+      </span>
       <input
-        className={problem ? 'big typed bad' : 'big typed'}
+        className={refused ? 'big typed bad' : 'big typed'}
         // biome-ignore lint/a11y/noAutofocus: the field replaces the number that had the focus
         autoFocus
         aria-label={`${field.label}, new value`}
-        aria-invalid={problem !== null}
-        aria-describedby={problem ? note : undefined}
+        aria-invalid={refused}
+        aria-describedby={refused ? REFUSAL_ID : undefined}
         autoComplete="off"
         spellCheck={false}
         value={text}
         onChange={(event) => setText(event.target.value)}
-        onFocus={(event) => first === '' && event.currentTarget.select()}
-        onBlur={() => problem === null && onClose()}
+        onFocus={(event) => first.length > 1 && event.currentTarget.select()}
+        onBlur={() => commit(false)}
         onKeyDown={(event) => {
-          if (event.key === 'Enter') commit();
-          if (event.key === 'Escape') onClose();
+          if (event.key === 'Enter') commit(true);
+          if (event.key === 'Escape') close(true);
         }}
       />
-      {problem && (
-        <p className="note turn-note" id={note} role="alert">
-          {problem}
-        </p>
-      )}
     </>
   );
 }
@@ -93,21 +100,23 @@ export function Turn({
 }) {
   const [power, setPower] = useState(first);
   const [typing, setTyping] = useState<string | null>(null);
-  const [refusal, setRefusal] = useState<string | null>(null);
   const drag = useRef<{ y: number; power: number } | null>(null);
   const spin = useRef<HTMLDivElement>(null);
   const label = useId();
   const shown = digitsOf(value, least, power);
 
-  const put = (next: number): string | null =>
-    applyEdit(setValue(useDocument.getState().design, group, name, next));
+  const put = (next: number): string | null => {
+    const message = applyEdit(setValue(useDocument.getState().design, group, name, next));
+    return message && `${message} Still ${formatQuantity(value, field.unit, 7)}.`;
+  };
   const turn = useCallback(
     (steps: number, at: number) => {
       // Always from the store: several steps may come before the page is drawn again.
       const { design } = useDocument.getState();
       const now = (design[group] as Readonly<Record<string, unknown>>)[name] as number;
       const next = stepDigit(now, at, steps, field.min, field.max);
-      setRefusal(next === now ? null : applyEdit(setValue(design, group, name, next)));
+      const message = next === now ? null : applyEdit(setValue(design, group, name, next));
+      refuse(message === null ? null : `${message} Still ${formatQuantity(now, field.unit, 7)}.`);
     },
     [group, name, field],
   );
@@ -169,10 +178,11 @@ export function Turn({
     drag.current.y -= steps * DRAG;
     turn(steps, drag.current.power + shiftOf(event));
   };
-  const close = () => {
+  const close = (keepFocus: boolean) => {
     setTyping(null);
+    refuse(null);
     // After the input has gone, the number takes the focus back.
-    requestAnimationFrame(() => spin.current?.focus());
+    if (keepFocus) requestAnimationFrame(() => spin.current?.focus());
   };
 
   return (
@@ -247,23 +257,9 @@ export function Turn({
           </span>
         </div>
       ) : (
-        <TypedValue
-          field={field}
-          first={typing}
-          onCommit={(next) => {
-            const problem = put(next);
-            if (problem === null) setRefusal(null);
-            return problem;
-          }}
-          onClose={close}
-        />
+        <TypedValue field={field} first={typing} onCommit={put} onClose={close} />
       )}
       <Tape field={field} value={value} ratio={name === 'voltage'} />
-      {refusal && typing === null && (
-        <p className="note turn-note" role="alert">
-          {refusal} Still {formatQuantity(value, field.unit, 7)}.
-        </p>
-      )}
     </div>
   );
 }

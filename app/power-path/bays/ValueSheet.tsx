@@ -33,7 +33,7 @@ export function ValueSheet({ bay }: { bay: Bay }) {
       <div className="sheet-columns" key={bay}>
         {groups.map(({ group, heading }) => (
           <div className="sheet-group" key={group}>
-            <h3>{heading}</h3>
+            <h2>{heading}</h2>
             {Object.entries(GROUPS[group] as Group).map(([name, field]) => (
               <Row key={name} group={group} name={name} field={field} />
             ))}
