@@ -11,7 +11,12 @@ import type { ReadingName, Readings } from './readings/catalogue.ts';
 import { PeriodMeter, Probes } from './readings/meter.ts';
 import { SETTLED_DISTANCE, Settling } from './readings/settling.ts';
 import { PARTS, type StepFailure } from './transient/step.ts';
-import { type Accuracy, STANDARD_ACCURACY, STATE_GROUPS, Transient } from './transient/transient.ts';
+import {
+  type Accuracy,
+  STANDARD_ACCURACY,
+  STATE_GROUPS,
+  Transient,
+} from './transient/transient.ts';
 
 export { SETTLED_DISTANCE };
 
@@ -27,9 +32,9 @@ export interface RunState {
   readonly fluxLinkage: Readonly<Record<string, number>>;
 }
 
-/** Signals that every run meters. The first two give the power into the tank. */
+/** Signals that every run meters. The first two give the power into the primary. */
 const METERED = [
-  'bridge voltage',
+  'primary voltage',
   'primary current',
   'output voltage',
   'load current',
@@ -65,7 +70,10 @@ function failureProblem(failure: StepFailure, time: number): Problem {
     case 'singular':
       return {
         place: '',
-        message: `The potential of “${failure.name}” cannot be computed ${at}: the conductances that meet there lie more than a factor of 10¹⁵ apart, or nothing holds it.`,
+        message:
+          failure.stiffest === undefined
+            ? `Nothing holds the potential of “${failure.name}”.`
+            : `The potential of “${failure.name}” cannot be computed ${at}: “${failure.stiffest}” and “${failure.weakest}” meet there, and their conductances over a step lie more than the limit of a factor of 10¹⁵ apart, which is all that double precision can hold.`,
       };
     case 'no-convergence':
       return {
@@ -106,7 +114,6 @@ export class Run {
   private heat = new Float64Array(PARTS.length);
   private deliveredBefore = 0;
   private deliveredLast = 0;
-  private meteredPeriods = 0;
 
   private constructor(plant: Plant, transient: Transient, accuracy: Accuracy) {
     this.accuracy = accuracy;
@@ -140,7 +147,6 @@ export class Run {
     this.peakStored = Math.max(this.peakStored, this.storedAtStart);
     this.heatBefore.fill(0);
     this.deliveredBefore = 0;
-    this.meteredPeriods = 0;
     return {
       probes: new Probes(
         stepper,
@@ -153,11 +159,7 @@ export class Run {
           terms(`joint ${k} potential`),
         ),
       ),
-      settling: new Settling(
-        stepper.weights().map(Math.abs),
-        transient.group,
-        STATE_GROUPS.length,
-      ),
+      settling: new Settling(stepper.weights().map(Math.abs), transient.group, STATE_GROUPS.length),
     };
   }
 
@@ -174,6 +176,11 @@ export class Run {
   /** Whole drive periods done since rest. */
   get periods(): number {
     return this.pastPeriods + this.transient.periods;
+  }
+
+  /** Seconds since rest at which the last whole drive period ended. */
+  get periodEnd(): number {
+    return this.transient.periodStart;
   }
 
   /** Why the run ended, or null. */
@@ -199,7 +206,6 @@ export class Run {
   *advance(): Generator<boolean, void> {
     const generation = this.generation;
     const { transient, meter, jointMeter } = this;
-    const { stepper } = transient;
     let before = transient.time;
     const steps = transient.advance();
     let periods = transient.periods;
@@ -220,7 +226,6 @@ export class Run {
       before = transient.time;
       meter.step(h);
       jointMeter.step(h);
-      void stepper;
       yield ended;
       if (generation !== this.generation) return;
     }
@@ -239,7 +244,6 @@ export class Run {
     }
     this.deliveredLast = stepper.delivered - this.deliveredBefore;
     this.deliveredBefore = stepper.delivered;
-    this.meteredPeriods++;
   }
 
   /** Extremes and mean over the last whole period; null before there is one. */
@@ -326,7 +330,7 @@ export class Run {
       efficiency: percent(loadPower, supplyPower),
       powerFactor: share(
         meter.meanProduct,
-        Math.sqrt(meter.meanSquare[METER['bridge voltage']] * meter.meanSquare[primary]),
+        Math.sqrt(meter.meanSquare[METER['primary voltage']] * meter.meanSquare[primary]),
       ),
       bridgeLoss: power('supply') + power('bridge'),
       tankLoss: power('tank'),

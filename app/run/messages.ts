@@ -1,7 +1,5 @@
 /** What the worker sends to the page: plain data and transferable columns. */
-import type { Problem } from '../../sim-core/design/problem.ts';
-import type { Signal } from '../../sim-core/plant/signal.ts';
-import type { Readings } from '../../sim-core/readings/catalogue.ts';
+import type { Problem, Readings, Signal } from '../../sim-core/index.ts';
 
 /** The per-period envelope of one signal: one entry per completed drive period. */
 export interface Envelope {
@@ -50,6 +48,8 @@ export interface Chunk {
   readonly history: HistoryColumns;
   readonly detail: DetailColumns | null;
   readonly readings: Readings;
+  /** Mean potential of joints 0 … S over the last period, volts. */
+  readonly joints: readonly number[] | null;
   readonly effort: Effort;
 }
 

@@ -1,8 +1,6 @@
 /** What the page knows of the run: status, problems, readings. Samples never live here. */
 import { create } from 'zustand';
-import type { Problem } from '../../sim-core/design/problem.ts';
-import type { Signal } from '../../sim-core/plant/signal.ts';
-import type { Readings } from '../../sim-core/readings/catalogue.ts';
+import type { Problem, Readings, Signal } from '../../sim-core/index.ts';
 import type { Effort } from './messages.ts';
 
 /** What the run is doing, as the page says it. */

@@ -138,7 +138,7 @@ const bridge = {
     min: -0.25,
     max: 0.25,
     default: 0,
-    why: 'and less than half of what the dead times leave of a half period',
+    why: 'and less than half a drive period less the dead time',
   }),
   switchKind: choice({
     label: 'Switches',

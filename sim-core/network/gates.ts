@@ -8,6 +8,8 @@ export interface GatePattern {
   readonly start: readonly number[];
   /** Gate signals during each interval: bit g is gate g. */
   readonly on: readonly number[];
+  /** At the very start of a run all gates are off for this long, seconds. */
+  readonly quiet: number;
 }
 
 /** One gate's on-times within the period: from `from` for `length` seconds, wrapping around. */
@@ -22,8 +24,9 @@ export interface OnTime {
  * of a millionth of the period are one edge.
  * @param period   seconds, > 0
  * @param onTimes  any number per gate; lengths ≤ 0 are never on
+ * @param quiet    see GatePattern
  */
-export function gatePattern(period: number, onTimes: readonly OnTime[]): GatePattern {
+export function gatePattern(period: number, onTimes: readonly OnTime[], quiet = 0): GatePattern {
   const least = 1e-12 * period;
   const wrap = (t: number): number => {
     const inside = t - period * Math.floor(t / period);
@@ -43,5 +46,5 @@ export function gatePattern(period: number, onTimes: readonly OnTime[]): GatePat
     }
     return bits;
   });
-  return { period, start, on };
+  return { period, start, on, quiet };
 }

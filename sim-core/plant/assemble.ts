@@ -5,25 +5,14 @@
 import type { Design } from '../design/schema.ts';
 import type { GatePattern } from '../network/gates.ts';
 import { type Network, NetworkBuilder } from '../network/network.ts';
-import type { Term } from '../network/probe.ts';
 import { bridgePattern, buildBridge } from './bridge.ts';
 import { buildOutput } from './output.ts';
 import type { Signal } from './signal.ts';
+import type { ProbedSignal, Site } from './site.ts';
 import { buildStack } from './stack.ts';
 import { buildSupply } from './supply.ts';
 import { buildTank } from './tank.ts';
 import { buildTransformer } from './transformer.ts';
-
-/** A signal together with what it is made of. */
-export interface ProbedSignal extends Signal {
-  readonly terms: readonly Term[];
-}
-
-/** What the bays build into. */
-export interface Site {
-  readonly network: NetworkBuilder;
-  readonly signals: ProbedSignal[];
-}
 
 /** A plant: the network of a design, its gating and its signals. */
 export interface Plant {

@@ -6,7 +6,7 @@ import type { Design, Values } from '../design/schema.ts';
 import { type GatePattern, gatePattern } from '../network/gates.ts';
 import { type Piece, piecesThrough } from '../network/network.ts';
 import { voltageBetween } from '../network/probe.ts';
-import type { Site } from './assemble.ts';
+import type { Site } from './site.ts';
 import { NEGATIVE_RAIL, POSITIVE_RAIL } from './supply.ts';
 
 /** Nodes of the legs' midpoints. */
@@ -74,10 +74,15 @@ export function bridgePattern(design: Design): GatePattern {
   const period = 1 / frequency;
   const width = period / 2 + widthError;
   const shift = ((180 - phaseShift) / 360) * period;
-  return gatePattern(period, [
-    { gate: 0, from: deadTime, length: width - deadTime },
-    { gate: 1, from: width + deadTime, length: period - width - deadTime },
-    { gate: 2, from: shift + width + deadTime, length: period - width - deadTime },
-    { gate: 3, from: shift + deadTime, length: width - deadTime },
-  ]);
+  return gatePattern(
+    period,
+    [
+      { gate: 0, from: deadTime, length: width - deadTime },
+      { gate: 1, from: width + deadTime, length: period - width - deadTime },
+      { gate: 2, from: shift + width + deadTime, length: period - width - deadTime },
+      { gate: 3, from: shift + deadTime, length: width - deadTime },
+    ],
+    // The first commands come at time 0 to switches that were all off: they wait as any other.
+    deadTime,
+  );
 }

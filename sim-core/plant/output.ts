@@ -5,7 +5,7 @@
 import type { Design } from '../design/schema.ts';
 import type { Piece } from '../network/network.ts';
 import { type Term, voltageBetween } from '../network/probe.ts';
-import type { Site } from './assemble.ts';
+import type { Site } from './site.ts';
 import { joint } from './stack.ts';
 
 const LOAD = 'load';
@@ -28,8 +28,20 @@ export function buildOutput({ network, signals }: Site, design: Design): void {
   const other = lead === 'positive' ? 'negative' : 'positive';
   const outputLead = `output, ${lead}`;
   const loadLead = `load, ${lead}`;
-  network.resistor('resistor in the tank', 'output', terminals[lead], outputLead, output.tankResistance);
-  network.resistor('resistor at the load', 'output', outputLead, loadLead, output.loadEndResistance);
+  network.resistor(
+    'resistor in the tank',
+    'output',
+    terminals[lead],
+    outputLead,
+    output.tankResistance,
+  );
+  network.resistor(
+    'resistor at the load',
+    'output',
+    outputLead,
+    loadLead,
+    output.loadEndResistance,
+  );
   const ends = { [lead]: outputLead, [other]: terminals[other] };
   const loadEnds = { [lead]: loadLead, [other]: terminals[other] };
   const plus = ends.positive;

@@ -5,7 +5,7 @@
 import type { Design } from '../design/schema.ts';
 import { EARTH, type NetworkBuilder, piecesThrough } from '../network/network.ts';
 import { voltageBetween } from '../network/probe.ts';
-import type { Site } from './assemble.ts';
+import type { Site } from './site.ts';
 import { windingEnd, windingStart } from './transformer.ts';
 
 /** Node of joint k, counted from 0 at the negative terminal. */

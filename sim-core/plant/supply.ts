@@ -6,7 +6,7 @@
 import type { Design } from '../design/schema.ts';
 import { EARTH, type Piece } from '../network/network.ts';
 import { voltageBetween } from '../network/probe.ts';
-import type { Site } from './assemble.ts';
+import type { Site } from './site.ts';
 
 /** Nodes of the rails. */
 export const POSITIVE_RAIL = 'positive rail';
@@ -72,8 +72,20 @@ export function buildSupply({ network, signals }: Site, design: Design): void {
     if (earthing === 'negative') network.join(NEGATIVE_RAIL, EARTH);
     else if (earthing === 'positive') network.join(POSITIVE_RAIL, EARTH);
     else {
-      network.resistor('bus leakage, positive', 'earthing', POSITIVE_RAIL, EARTH, leakageResistance);
-      network.resistor('bus leakage, negative', 'earthing', NEGATIVE_RAIL, EARTH, leakageResistance);
+      network.resistor(
+        'bus leakage, positive',
+        'earthing',
+        POSITIVE_RAIL,
+        EARTH,
+        leakageResistance,
+      );
+      network.resistor(
+        'bus leakage, negative',
+        'earthing',
+        NEGATIVE_RAIL,
+        EARTH,
+        leakageResistance,
+      );
     }
   }
   signals.push(

@@ -1,8 +1,8 @@
 /** The tank bay: series inductor and capacitor from leg A, parallel capacitor across the primary. */
 import type { Design } from '../design/schema.ts';
 import { voltageBetween } from '../network/probe.ts';
-import type { Site } from './assemble.ts';
 import { LEG_A, LEG_B } from './bridge.ts';
+import type { Site } from './site.ts';
 
 /** Node of the primary's terminal behind the tank; the other terminal is leg B. */
 export const PRIMARY = 'primary terminal';

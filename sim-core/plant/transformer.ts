@@ -6,8 +6,8 @@
 import type { Design, WindingValues } from '../design/schema.ts';
 import { EARTH, type Piece, piecesThrough } from '../network/network.ts';
 import { voltageBetween } from '../network/probe.ts';
-import type { Site } from './assemble.ts';
 import { LEG_B } from './bridge.ts';
+import type { Site } from './site.ts';
 import { PRIMARY } from './tank.ts';
 
 const STAR = 'star point';
@@ -93,7 +93,11 @@ export function buildTransformer({ network, signals }: Site, design: Design): vo
       a,
       winding.leakageInductance,
       winding.resistance,
-      { ratio: winding.sense === 'forward' ? winding.ratio : -winding.ratio, from: STAR, to: LEG_B },
+      {
+        ratio: winding.sense === 'forward' ? winding.ratio : -winding.ratio,
+        from: STAR,
+        to: LEG_B,
+      },
     );
     // Halves at the ends alone would overstate the differential part threefold: hence −1/6.
     network.capacitor(
@@ -118,7 +122,12 @@ export function buildTransformer({ network, signals }: Site, design: Design): vo
       winding.screenCapacitance / 2,
     );
     signals.push(
-      { name: `section ${k} winding voltage`, unit: 'V', bay: 'transformer', terms: voltageBetween(a, b) },
+      {
+        name: `section ${k} winding voltage`,
+        unit: 'V',
+        bay: 'transformer',
+        terms: voltageBetween(a, b),
+      },
       {
         name: `section ${k} winding current`,
         unit: 'A',

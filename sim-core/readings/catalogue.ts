@@ -94,9 +94,9 @@ export const READINGS = {
     definition: 'Load power over supply power; it means little before the run has settled.',
   },
   powerFactor: {
-    label: 'Power factor at the bridge',
+    label: 'Power factor of the primary',
     unit: '',
-    definition: 'Mean power into the tank over rms bridge voltage times rms primary current.',
+    definition: 'Mean power into the primary over its rms voltage times its rms current.',
   },
   bridgeLoss: {
     label: 'Loss, supply and bridge',

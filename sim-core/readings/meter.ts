@@ -128,8 +128,7 @@ export class PeriodMeter {
     if (values.length > 1) {
       // Exact for the product of two straight lines.
       this.sumProduct +=
-        (h / 6) *
-        (last[0] * (2 * last[1] + values[1]) + values[0] * (last[1] + 2 * values[1]));
+        (h / 6) * (last[0] * (2 * last[1] + values[1]) + values[0] * (last[1] + 2 * values[1]));
     }
     for (let k = 0; k < values.length; k++) {
       const before = last[k];

@@ -45,6 +45,9 @@ export const PARTS: readonly Part[] = [
 const FREE_ROUNDS = 10;
 const MOST_ROUNDS = 200;
 
+/** The least-content point is found when the search moves by less than this share of the voltages. */
+const STALL = 1e-10;
+
 /** A pivot this small beside its diagonal has lost all its digits. */
 const LEAST_PIVOT = 1e-15;
 
@@ -69,6 +72,9 @@ export interface StepFailure {
   readonly kind: 'singular' | 'no-convergence' | 'not-finite';
   /** Name of the node or element concerned. */
   readonly name: string;
+  /** Of a singular node: the elements there that hold it most stiffly and most weakly. */
+  readonly stiffest?: string;
+  readonly weakest?: string;
 }
 
 /** A well-spread 32-bit number for a small integer (finaliser of MurmurHash3, public domain). */
@@ -168,6 +174,8 @@ export class Stepper {
   private readonly assembled: Float64Array;
   private readonly heat = new Float64Array(PARTS.length);
   private work = 0;
+  /** Length of the step attempted last, seconds. */
+  private attempted = 0;
   private factors: Float64Array;
   private factorsFor: StepLength | null = null;
   private factorsA = 0;
@@ -268,7 +276,11 @@ export class Stepper {
   }
 
   /** Number of capacitors, inductors and cores: where the parts of the state vector begin. */
-  get counts(): { readonly capacitors: number; readonly inductors: number; readonly cores: number } {
+  get counts(): {
+    readonly capacitors: number;
+    readonly inductors: number;
+    readonly cores: number;
+  } {
     return { capacitors: this.nC, inductors: this.nL, cores: this.nF };
   }
 
@@ -348,6 +360,7 @@ export class Stepper {
   attempt(step: StepLength, time: number): boolean {
     const { nS, state, history, stage1, stage2, slope0, slope1, slope2, scale } = this;
     const { a, h } = step;
+    this.attempted = h;
     this.pieceBefore.set(this.piece);
     this.xBefore.set(this.x);
     const keyA = this.keyA;
@@ -396,12 +409,45 @@ export class Stepper {
         if (this.piece[d] !== this.pieceBefore[d]) this.commutations++;
       }
     }
+    if (this.changed || !this.slopeKnown) this.addSharpHeat(this.attempted);
     this.state.set(this.stage2);
     this.slope0.set(this.slope2);
     this.slopeKnown = true;
     this.delivered += this.work;
     for (let k = 0; k < this.heat.length; k++) this.dissipated[k] += this.heat[k];
     this.steps++;
+  }
+
+  /**
+   * Heat of the sharp events in a step in which a device commutates or a gate has just moved.
+   * A capacitance that discharges into a switch does so within picoseconds: charge and energy
+   * come out right, but the power at the two stages does not show the pulse. For every storing
+   * element, what the stages' powers say went in less what it holds more is that heat.
+   */
+  private addSharpHeat(h: number): void {
+    const { nC, nL, nS, state, stage1, stage2, slope1, slope2, heat } = this;
+    for (let i = 0; i < nC + nL; i++) {
+      const weight = i < nC ? this.cValue[i] : this.lValue[i - nC];
+      const into = h * ((1 - GAMMA) * stage1[i] * slope1[i] + GAMMA * stage2[i] * slope2[i]);
+      const held = 0.5 * (stage2[i] - state[i]) * (stage2[i] + state[i]);
+      heat[i < nC ? this.cPart[i] : this.lPart[i - nC]] += weight * (into - held);
+    }
+    for (let i = nC + nL; i < nS; i++) {
+      const d = i - nC - nL;
+      const into =
+        h *
+        ((1 - GAMMA) * this.coreCurrent(d, stage1[i]) * slope1[i] +
+          GAMMA * this.coreCurrent(d, stage2[i]) * slope2[i]);
+      const held = this.coreEnergy(d, stage2[i]) - this.coreEnergy(d, state[i]);
+      heat[this.dPart[d]] += into - held;
+    }
+  }
+
+  /** Magnetising current at a flux linkage, by search along the pieces. */
+  private coreCurrent(core: number, fluxLinkage: number): number {
+    let p = this.dCurves[core][0];
+    while (fluxLinkage > this.pieceHigh[p]) p++;
+    return this.pieceSlope[p] * fluxLinkage + this.pieceOffset[p];
   }
 
   /** Forget the step just attempted: devices return to their pieces. */
@@ -541,8 +587,9 @@ export class Stepper {
     for (let round = 0; round < MOST_ROUNDS; round++) {
       if (round >= FREE_ROUNDS) trial.set(x);
       if (!this.solveNow(step, history)) return false;
-      // Far from rest the pieces may cycle; the exact minimum along the line cannot.
-      if (round >= FREE_ROUNDS) this.searchLine(step, history);
+      // Pieces may cycle; the exact minimum along the line cannot. Where it no longer moves,
+      // what is left to decide is rounding at corners, where either piece is right.
+      if (round >= FREE_ROUNDS && this.searchLine(step, history) < STALL) return true;
       let moved = false;
       let last = 0;
       for (let d = 0; d < devices; d++) {
@@ -575,11 +622,7 @@ export class Stepper {
   private solveNow(step: StepLength, history: Float64Array): boolean {
     const { x, piece, pieceOffset, pieceSlope, nF, dFrom, dTo } = this;
     const fluxes = this.nC + this.nL;
-    if (
-      this.factorsFor !== step ||
-      this.factorsA !== this.keyA ||
-      this.factorsB !== this.keyB
-    ) {
+    if (this.factorsFor !== step || this.factorsA !== this.keyA || this.factorsB !== this.keyB) {
       if (!this.factorNow(step)) return false;
     }
     x.set(this.sources);
@@ -619,7 +662,7 @@ export class Stepper {
       if (bad >= 0) {
         this.cache.clear();
         this.factorsFor = null;
-        this.failure = { kind: 'singular', name: this.system.nodeOf[bad] };
+        this.failure = { kind: 'singular', name: this.system.nodeOf[bad], ...this.hold(step, bad) };
         return false;
       }
     }
@@ -630,33 +673,60 @@ export class Stepper {
     return true;
   }
 
+  /** The elements that hold an unknown most stiffly and most weakly. */
+  private hold(step: StepLength, unknown: number): { stiffest?: string; weakest?: string } {
+    const { resistors, capacitors, inductors, cores, characteristics, sines } = this.network;
+    const at = (node: number): boolean => this.system.unknown[node] === unknown;
+    const held = [
+      ...resistors.map((e, k) => ({ e, g: this.rConductance[k] })),
+      ...capacitors.map((e, k) => ({ e, g: step.gC[k] })),
+      ...inductors.map((e, k) => ({ e, g: step.gL[k] })),
+      ...[...cores, ...characteristics].map((e, d) => ({ e, g: this.dSlope[d] })),
+      ...sines.map((e, k) => ({ e, g: this.sConductance[k] })),
+    ]
+      .filter(({ e, g }) => g > 0 && (at(e.from) || at(e.to)))
+      .sort((a, b) => b.g - a.g);
+    return { stiffest: held[0]?.e.name, weakest: held.at(-1)?.e.name };
+  }
+
   /**
    * Move x to the point of least co-content on the line from `trial` to x.
-   * The derivative along the line is a rising function in straight pieces: halve until the
-   * sign change is bracketed closely, then take the secant through the bracket.
+   * The derivative along the line is a rising function in straight pieces: halve or take the
+   * secant until its change of sign is bracketed closely.
+   * @returns how far x then lies from `trial`, as a share of the largest voltage
    */
-  private searchLine(step: StepLength, history: Float64Array): void {
+  private searchLine(step: StepLength, history: Float64Array): number {
     const { x, trial } = this;
+    let share = 1;
     const atFull = this.slopeAlong(step, history, 1);
-    if (atFull <= 0) return;
-    let low = 0;
-    let high = 1;
-    let atLow = this.slopeAlong(step, history, 0);
-    let atHigh = atFull;
-    if (atLow >= 0) return;
-    for (let k = 0; k < 60 && high - low > 1e-14; k++) {
-      const secant = low - (atLow * (high - low)) / (atHigh - atLow);
-      const t = k % 3 === 2 || !(secant > low && secant < high) ? 0.5 * (low + high) : secant;
-      const value = this.slopeAlong(step, history, t);
-      if (value < 0) {
-        low = t;
-        atLow = value;
-      } else {
-        high = t;
-        atHigh = value;
+    if (atFull > 0) {
+      let low = 0;
+      let high = 1;
+      let atLow = this.slopeAlong(step, history, 0);
+      let atHigh = atFull;
+      for (let k = 0; atLow < 0 && k < 60 && high - low > 1e-14; k++) {
+        const secant = low - (atLow * (high - low)) / (atHigh - atLow);
+        const t = k % 3 === 2 || !(secant > low && secant < high) ? 0.5 * (low + high) : secant;
+        const value = this.slopeAlong(step, history, t);
+        if (value < 0) {
+          low = t;
+          atLow = value;
+        } else {
+          high = t;
+          atHigh = value;
+        }
       }
+      share = atLow < 0 ? high : 0;
     }
-    for (let i = 0; i < x.length; i++) x[i] = trial[i] + high * (x[i] - trial[i]);
+    let moved = 0;
+    let size = Number.MIN_VALUE;
+    for (let i = 0; i < x.length; i++) {
+      const step = share * (x[i] - trial[i]);
+      x[i] = trial[i] + step;
+      moved = Math.max(moved, Math.abs(step));
+      size = Math.max(size, Math.abs(x[i]));
+    }
+    return moved / size;
   }
 
   /** Derivative of the co-content along trial → x, at the share t of the way. */
@@ -695,7 +765,8 @@ export class Stepper {
       let p = this.piece[d];
       while (at > this.pieceHigh[p]) p++;
       while (at < this.pieceLow[p]) p--;
-      sum += (this.pieceSlope[p] * at + this.pieceOffset[p]) * direction(this.dFrom[d], this.dTo[d]);
+      sum +=
+        (this.pieceSlope[p] * at + this.pieceOffset[p]) * direction(this.dFrom[d], this.dTo[d]);
     }
     return sum;
   }

@@ -1,0 +1,186 @@
+/**
+ * The session: a plain subscriber to the document, outside React. It sends designs to the worker,
+ * pulls what the worker computes, and writes it to the run store and the lanes' columns.
+ */
+import { type Remote, wrap } from 'comlink';
+import {
+  type Design,
+  fieldOf,
+  formatQuantity,
+  type GroupName,
+  placesThatDiffer,
+} from '../../sim-core/index.ts';
+import { useDocument } from '../document/store.ts';
+import { appendHistory, clearColumns, markHistory, setDetail } from '../lanes/columns.ts';
+import type { Chunk } from './messages.ts';
+import { useRun } from './store.ts';
+import type { Solver } from './worker.ts';
+
+/** What the worker still has to do, the latest wish of each kind only. */
+interface Wishes {
+  open: Design | null;
+  change: Design | null;
+  watch: readonly string[] | null;
+}
+
+let solver: Remote<Solver> | null = null;
+const wishes: Wishes = { open: null, change: null, watch: null };
+let held = false;
+/** Whether the loop of pulls is under way. */
+let pulling = false;
+/** Whether there is anything to compute: not settled, not failed. */
+let awake = true;
+/** Time of the run at the last change, seconds. */
+let changedAt = 0;
+
+const watched = (section: number): readonly string[] => [
+  'bridge voltage',
+  'primary current',
+  'flux linkage',
+  `section ${section} winding voltage`,
+  `section ${section} winding current`,
+  'output voltage',
+];
+
+/** What a change was, for the history strip: "Bus voltage 310 V → 320 V". */
+function describeChange(before: Design, after: Design): string {
+  const places = placesThatDiffer(before, after);
+  if (places.length !== 1) return `${places.length} values changed`;
+  const [group, name] = places[0].split('.') as [GroupName, string];
+  const field = fieldOf(group, name);
+  if (!field) return 'sections changed';
+  const print = (design: Design): string => {
+    const value = (design[group] as Readonly<Record<string, unknown>>)[name];
+    if (typeof value === 'number') {
+      return formatQuantity(value, field.kind === 'quantity' ? field.unit : '');
+    }
+    if (field.kind === 'choice') {
+      return field.options.find((option) => option.value === value)?.label ?? '';
+    }
+    if (field.kind === 'quantity') return field.absent;
+    return value ? 'yes' : 'no';
+  };
+  return `${field.label} ${print(before)} → ${print(after)}`;
+}
+
+/** Whether anything that the plant is built from differs (not just the name or the notes). */
+function plantDiffers(before: Design, after: Design): boolean {
+  return placesThatDiffer(before, after).some((place) => place !== 'name' && place !== 'notes');
+}
+
+function takeChunk(chunk: Chunk): void {
+  appendHistory(chunk.history);
+  if (chunk.detail) setDetail(chunk.detail);
+  awake = chunk.status === 'running';
+  const { settledAfter } = useRun.getState();
+  useRun.setState({
+    state: chunk.status,
+    ...(chunk.problem ? { problem: chunk.problem } : {}),
+    time: chunk.time,
+    settledAfter: chunk.status === 'settled' ? (settledAfter ?? chunk.time - changedAt) : null,
+    readings: chunk.readings,
+    joints: chunk.joints,
+    effort: chunk.effort,
+  });
+}
+
+/** Do what is wished, then pull; until there is nothing left to do. */
+async function pull(): Promise<void> {
+  if (pulling || !solver) return;
+  pulling = true;
+  try {
+    for (;;) {
+      const { open, change, watch } = wishes;
+      wishes.open = wishes.change = wishes.watch = null;
+      if (watch) await solver.watch(watch);
+      if (open || change) {
+        const opened = await (open ? solver.open(change ?? open) : solver.change(change as Design));
+        if (opened.ok) {
+          if (open) clearColumns();
+          changedAt = open ? 0 : useRun.getState().time;
+          awake = true;
+          useRun.setState({
+            problem: null,
+            signals: opened.signals,
+            settledAfter: null,
+            ...(open ? { time: 0, readings: null, joints: null, effort: null } : {}),
+            state: held ? 'held' : 'running',
+          });
+        } else {
+          useRun.setState({ problem: opened.problem });
+        }
+      } else if (watch) {
+        // The lanes show another signal: compute on, if only for two periods.
+        awake = true;
+      }
+      if (wishes.open || wishes.change || wishes.watch) continue;
+      if (held || !awake) break;
+      const chunk = await solver.next();
+      if (!chunk) break;
+      // A design that is waiting makes the old one's samples stale.
+      if (!wishes.open) takeChunk(chunk);
+    }
+  } finally {
+    pulling = false;
+  }
+}
+
+/** Start the worker and follow the document from now on. Call once. */
+export function openSession(): void {
+  const worker = new Worker(new URL('./worker.ts', import.meta.url), { type: 'module' });
+  worker.addEventListener('error', () => {
+    useRun.setState({
+      state: 'failed',
+      problem: { place: '', message: 'The solver stopped unexpectedly. Reload the page.' },
+    });
+  });
+  solver = wrap<Solver>(worker);
+  wishes.watch = watched(useRun.getState().section);
+  wishes.open = useDocument.getState().design;
+  useDocument.subscribe(({ design, past, future }, before) => {
+    if (design === before.design || !plantDiffers(before.design, design)) return;
+    const begun = past.length === 0 && future.length === 0;
+    if (begun || design.name !== before.design.name) {
+      // Another design was opened: it starts from rest.
+      wishes.open = design;
+      wishes.change = null;
+      showSection(Math.min(useRun.getState().section, design.sections.count));
+    } else {
+      markHistory(describeChange(before.design, design));
+      wishes.change = design;
+    }
+    void pull();
+  });
+  useRun.subscribe(({ section }, before) => {
+    if (section === before.section) return;
+    wishes.watch = watched(section);
+    void pull();
+  });
+  void pull();
+}
+
+/** Stop the clock of the run; values can still be changed. */
+export function hold(): void {
+  held = true;
+  if (useRun.getState().state !== 'failed') useRun.setState({ state: 'held' });
+}
+
+/** Let the run go on. */
+export function resume(): void {
+  held = false;
+  if (useRun.getState().state === 'held') useRun.setState({ state: 'running' });
+  void pull();
+}
+
+/** Start the present design again, from rest. */
+export function restart(): void {
+  held = false;
+  wishes.open = useDocument.getState().design;
+  wishes.change = null;
+  void pull();
+}
+
+/** Show another section's winding in the lanes, counted from 1. */
+export function showSection(section: number): void {
+  useRun.setState({ section });
+}
