@@ -2,7 +2,7 @@
 import { PREFIXES, READINGS, type ReadingName, takesPrefix, type Unit } from '../sim-core/index.ts';
 
 /** A figure and the unit that follows it, apart because they are set in different sizes. */
-export interface Figure {
+interface Figure {
   readonly number: string;
   readonly unit: string;
 }
@@ -15,7 +15,7 @@ export function unitOf(value: number, unit: Unit): { unit: string; divisor: numb
 }
 
 /** The value to `digits` significant digits, trailing zeros kept: 20e-3, 'A' gives "20.0", "mA". */
-export function figureOf(value: number, unit: Unit, digits = 3): Figure {
+function figureOf(value: number, unit: Unit, digits = 3): Figure {
   if (value === 0) return { number: '0', unit };
   const [mantissa, power] = Math.abs(value)
     .toExponential(digits - 1)

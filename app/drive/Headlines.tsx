@@ -1,6 +1,6 @@
 /** The four readings that stand in view all day. */
 import { READINGS, type ReadingName } from '../../sim-core/index.ts';
-import { figureOf, readingText } from '../figure.ts';
+import { readingText } from '../figure.ts';
 import { useRun } from '../run/store.ts';
 
 const HEADLINES = [
@@ -17,25 +17,32 @@ const HEADLINES = [
 }[];
 
 function Headline({ reading, label, under, word }: (typeof HEADLINES)[number]) {
-  const below = useRun((run) => run.readings?.[under] ?? null);
-  const value = useRun((run) => run.readings?.[reading] ?? null);
-  const figure = value === null ? null : figureOf(value, READINGS[reading].unit);
+  // Selected as text, so that only a change that shows draws anything again.
+  const text = useRun((run) => {
+    const value = run.readings?.[reading] ?? null;
+    return value === null ? null : readingText(reading, value);
+  });
+  const below = useRun((run) => {
+    const value = run.readings?.[under] ?? null;
+    return value === null ? null : readingText(under, value);
+  });
+  const [number, unit] = text?.split(' ') ?? [];
   return (
     <div>
       <dt className="lab" title={READINGS[reading].definition}>
         {label}
       </dt>
       <dd className="headline">
-        {figure === null ? (
+        {text === null ? (
           <span className="m">–</span>
         ) : (
           <>
-            {figure.number} <small>{figure.unit}</small>
+            {number} <small>{unit}</small>
           </>
         )}
       </dd>
       <dd className="lab" title={READINGS[under].definition}>
-        {below !== null && `${readingText(under, below)} ${word}`}
+        {below !== null && `${below} ${word}`}
       </dd>
     </div>
   );

@@ -2,6 +2,7 @@
 import type { Bay } from '../../sim-core/index.ts';
 import './path.css';
 import { type ReactNode, useCallback, useMemo, useState } from 'react';
+import { useShallow } from 'zustand/react/shallow';
 import { useDocument } from '../document/store.ts';
 import { unitOf } from '../figure.ts';
 import { useRun } from '../run/store.ts';
@@ -66,12 +67,21 @@ function Head({ bay, x, end, brief }: { bay: Bay; x: number; end: number; brief:
   );
 }
 
+/** Values rounded to a part in sixteen thousand of the largest, or finer; null stays null. */
+function visible<T extends number | null>(values: readonly T[]): readonly T[] {
+  const largest = Math.max(...values.map((value) => Math.abs(value ?? 0)));
+  if (largest === 0 || !Number.isFinite(largest)) return values;
+  const step = 2 ** (Math.floor(Math.log2(largest)) - 14);
+  return values.map((value) => (value === null ? value : ((Math.round(value / step) * step) as T)));
+}
+
 /** Joint potentials as far as the run has told them, else equal shares of the output voltage. */
 function useJoints(): readonly number[] | null {
   const count = useDocument((state) => state.design.sections.count);
   const stack = useDocument((state) => state.design.stack);
-  const joints = useRun((run) => run.joints);
-  const output = useRun((run) => run.readings?.outputVoltage ?? null);
+  // What cannot be seen must not be drawn again: potentials count to a part in sixteen thousand.
+  const joints = useRun(useShallow((run) => run.joints && visible(run.joints)));
+  const output = useRun((run) => visible([run.readings?.outputVoltage ?? null])[0]);
   return useMemo(() => {
     if (joints && joints.length === count + 1) return joints;
     if (output === null) return null;
@@ -84,8 +94,8 @@ function useJoints(): readonly number[] | null {
 function StackDrawing({ plan, height, rails }: { plan: Plan; height: number; rails: number }) {
   const design = useDocument((state) => state.design);
   const joints = useJoints();
-  const current = useRun((run) => run.readings?.outputCurrent ?? null);
-  const voltage = useRun((run) => run.readings?.outputVoltage ?? null);
+  const current = useRun((run) => visible([run.readings?.outputCurrent ?? null])[0]);
+  const voltage = useRun((run) => visible([run.readings?.outputVoltage ?? null])[0]);
   const foot = height - BELOW;
   const { count } = design.sections;
   const earthed = design.stack.earth === 'joint' ? Math.min(design.stack.joint, count) : null;
