@@ -13,7 +13,7 @@ import {
   timeTicks,
 } from './axis.ts';
 import { type History as Columns, readDetail, readHistory } from './columns.ts';
-import { useFrame } from './frame.ts';
+import { useFrame, writeText } from './frame.ts';
 import { Sample } from './Lane.tsx';
 import { type Paint, readPaint } from './paint.ts';
 
@@ -286,14 +286,14 @@ export function History() {
       window: window ? [detail.time[0], detail.time[detail.time.length - 1]] : null,
       settled,
     });
-    const write = (to: HTMLElement | null, text: string) => {
-      if (to && to.textContent !== text) to.textContent = text;
-    };
     const { voltage, current } = limits.current;
-    write(voltageUnit.current, axisUnit(Math.max(-voltage.low, voltage.high), 'V').symbol);
-    write(currentUnit.current, axisUnit(current, 'A').symbol);
-    write(voltageNow.current, last < 0 ? '' : figureText(history.outputVoltage.mean[last], 'V'));
-    write(currentNow.current, last < 0 ? '' : figureText(peak[last], 'A'));
+    writeText(voltageUnit.current, axisUnit(Math.max(-voltage.low, voltage.high), 'V').symbol);
+    writeText(currentUnit.current, axisUnit(current, 'A').symbol);
+    writeText(
+      voltageNow.current,
+      last < 0 ? '' : figureText(history.outputVoltage.mean[last], 'V'),
+    );
+    writeText(currentNow.current, last < 0 ? '' : figureText(peak[last], 'A'));
     element.setAttribute('aria-label', inWords(history, settled));
   });
 

@@ -4,12 +4,13 @@ import uPlot from 'uplot';
 import { figureText } from '../figure.ts';
 import type { DetailColumns } from '../run/messages.ts';
 import { axisUnit, evenLimits, type Limits, limitsFromZero, NO_LIMITS } from './axis.ts';
+import { writeText } from './frame.ts';
 import { EDGE, type LaneState, laneOptions, painted, TIME_AXIS } from './options.ts';
 import { type Paint, readPaint } from './paint.ts';
 import { type LaneWords, nameOf, samplesOf, type Trace, thin, valueAt } from './traces.ts';
 
 /** Most samples a lane draws, each with a value for every trace. */
-export const MOST_SAMPLES = 2500;
+const MOST_SAMPLES = 2500;
 
 /**
  * A knee comes into view when it is at most this many times above the flux, and leaves it again
@@ -153,9 +154,7 @@ export function Lane({ words, timed, section, heading, note, ref }: Properties) 
         state.right = limitsOf('right', drawn);
         words.traces.forEach((trace, i) => {
           const { low, high } = state[trace.side];
-          const unit = units.current[i];
-          const { symbol } = axisUnit(Math.max(-low, high), trace.unit);
-          if (unit && unit.textContent !== symbol) unit.textContent = symbol;
+          writeText(units.current[i], axisUnit(Math.max(-low, high), trace.unit).symbol);
         });
         const start = time[0] ?? 0;
         const span = time.length > 0 ? time[time.length - 1] - start : 0;
@@ -175,8 +174,7 @@ export function Lane({ words, timed, section, heading, note, ref }: Properties) 
           const column = samples[i];
           const known = at !== null && column !== null && time.length > 0;
           const text = known ? figureText(valueAt(time, column, at), trace.unit) : '';
-          const output = values.current[i];
-          if (output && output.textContent !== text) output.textContent = text;
+          writeText(values.current[i], text);
           return { name: names[i], text };
         });
       },

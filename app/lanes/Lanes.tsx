@@ -11,7 +11,7 @@ import { figureText } from '../figure.ts';
 import { useRun } from '../run/store.ts';
 import { axisUnit } from './axis.ts';
 import { readDetail, subscribe } from './columns.ts';
-import { useFrame } from './frame.ts';
+import { useFrame, writeText } from './frame.ts';
 import { History } from './History.tsx';
 import { Lane, type LaneHandle } from './Lane.tsx';
 import { readPaint } from './paint.ts';
@@ -32,11 +32,6 @@ const TABLE_DELAY = 500;
 /** A length on an element's style, CSS pixels. */
 const lengthOf = (style: CSSStyleDeclaration, name: string) =>
   Number.parseFloat(style.getPropertyValue(name));
-
-/** Text of an element, written only when it differs. */
-function write(element: HTMLElement | null, text: string) {
-  if (element && element.textContent !== text) element.textContent = text;
-}
 
 /** A time with as many decimals as a window of this span calls for, and its unit: "83.900", "ms". */
 function stamp(time: number, span: number, end: number): { text: string; unit: string } {
@@ -89,10 +84,14 @@ export function Lanes() {
     const at = cursor.current;
     const known = detail !== null && detail.time.length > 1;
     const shown = at !== null && known;
-    root.current?.style.setProperty('--cursor', String(at ?? 0));
+    const place = String(at ?? 0);
+    // Setting an inherited property, even to what it was, may restyle everything below.
+    if (root.current && root.current.style.getPropertyValue('--cursor') !== place) {
+      root.current.style.setProperty('--cursor', place);
+    }
     root.current?.classList.toggle('cursor-hidden', !shown);
     if (!shown) {
-      write(cursorTime.current, '');
+      writeText(cursorTime.current, '');
       flag.current?.setAttribute('aria-valuenow', '0');
       flag.current?.setAttribute('aria-valuetext', 'hidden');
       eachLane((lane) => lane.readAt(null));
@@ -101,7 +100,7 @@ export function Lanes() {
     const first = detail.time[0];
     const span = detail.time[detail.time.length - 1] - first;
     const words: string[] = [figureText(at * span, 's', 4)];
-    write(cursorTime.current, words[0]);
+    writeText(cursorTime.current, words[0]);
     flag.current?.setAttribute('aria-valuenow', String(Math.round(at * 1000) / 10));
     flag.current?.setAttribute('aria-valuetext', words[0]);
     eachLane((lane) => {
@@ -134,14 +133,14 @@ export function Lanes() {
       const last = detail.time[detail.time.length - 1];
       const from = stamp(first, last - first, last);
       const to = stamp(last, last - first, last);
-      write(stretchOfWindow.current, `${from.text} to ${to.text} ${to.unit}`);
-      write(
+      writeText(stretchOfWindow.current, `${from.text} to ${to.text} ${to.unit}`);
+      writeText(
         start.current,
         `Time from ${from.text} ${from.unit}, ${axisUnit(last - first, 's').symbol}`,
       );
     } else {
-      write(stretchOfWindow.current, 'no drive period done yet');
-      write(start.current, '');
+      writeText(stretchOfWindow.current, 'no drive period done yet');
+      writeText(start.current, '');
     }
     placeCursor();
   });
@@ -190,10 +189,10 @@ export function Lanes() {
     };
     if (event.key === 'Escape') {
       moveTo(null);
-      write(spoken.current, 'Cursor hidden');
+      writeText(spoken.current, 'Cursor hidden');
     } else if (Object.hasOwn(moves, event.key)) {
       const index = Math.min(Math.max(moves[event.key], 0), last);
-      write(spoken.current, moveTo((time[index] - time[0]) / span));
+      writeText(spoken.current, moveTo((time[index] - time[0]) / span));
     } else return;
     event.preventDefault();
   };

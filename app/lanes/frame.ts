@@ -1,4 +1,4 @@
-/** Drawing at most once per frame, when the columns, the size or the colours have changed. */
+/** What is drawn outside React: once per frame at most, and only what differs. */
 import { type RefObject, useEffect, useRef } from 'react';
 import { subscribe } from './columns.ts';
 import { onThemeChange } from './paint.ts';
@@ -65,4 +65,9 @@ export function useFrame(
     };
   }, [host]);
   return useRef(() => request.current()).current;
+}
+
+/** Set an element's text if it differs: the same text again would still cost a layout. */
+export function writeText(element: HTMLElement | null | undefined, text: string): void {
+  if (element && element.textContent !== text) element.textContent = text;
 }
