@@ -8,10 +8,16 @@ export interface Yield {
   readonly readings: Readonly<
     Record<string, { readonly label: string; readonly unit: Unit; readonly definition: string }>
   >;
-  /** Signals of the plant in `signalsOf`. */
-  readonly signals: readonly { readonly name: string; readonly unit: Unit }[];
-  /** One sentence: which design has these signals, and what other designs have. */
+  /** Signals of the plant in `signalsOf`, by bay. */
+  readonly signals: readonly NamedSignal[];
+  /** Sentences: which design has these signals, and what other designs have. */
   readonly signalsOf: string;
+}
+
+interface NamedSignal {
+  readonly name: string;
+  readonly unit: Unit;
+  readonly bay: string;
 }
 
 /** A table; a bar inside a cell would end it. */
@@ -62,6 +68,43 @@ const fieldRows = (fields: Group, path: string) =>
     ...limits(field),
     `${field.label}: ${field.about}`,
   ]);
+
+/** Letters that stand for the numbers in a signal's name, in turn. */
+const INDICES = ['k', 'j'];
+
+/**
+ * Rows of signals, one bay after another. Signals that differ by their numbers alone share a row,
+ * their numbers replaced by letters whose ranges it tells.
+ */
+function signalRows(signals: readonly NamedSignal[]): string[][] {
+  const rows = new Map<string, { signal: NamedSignal; pattern: string; numbers: number[][] }>();
+  for (const signal of signals) {
+    const numbers: number[] = [];
+    const pattern = signal.name.replace(/\d+/g, (digits) => {
+      numbers.push(Number(digits));
+      return INDICES[numbers.length - 1];
+    });
+    const key = `${signal.bay}/${pattern}`;
+    const row = rows.get(key) ?? { signal, pattern, numbers: numbers.map(() => []) };
+    numbers.forEach((number, n) => {
+      row.numbers[n].push(number);
+    });
+    rows.set(key, row);
+  }
+  const bays = [...new Set(signals.map(({ bay }) => bay))];
+  return bays.flatMap((bay) =>
+    [...rows.values()]
+      .filter((row) => row.signal.bay === bay)
+      .map(({ signal, pattern, numbers }) => [
+        bay,
+        `\`${pattern}\``,
+        numbers
+          .map((list, n) => `${INDICES[n]} = ${Math.min(...list)} to ${Math.max(...list)}`)
+          .join(', '),
+        signal.unit === '' ? '1' : signal.unit,
+      ]),
+  );
+}
 
 /** A design file as it may be written by hand. */
 export const EXAMPLE = {
@@ -120,9 +163,6 @@ export function referencePage({ readings, signals, signalsOf }: Yield): string {
     ),
     '## Signals',
     signalsOf,
-    table(
-      ['Signal', 'Unit'],
-      signals.map(({ name, unit }) => [`\`${name}\``, unit === '' ? '1' : unit]),
-    ),
+    table(['Bay', 'Signal', 'Here', 'Unit'], signalRows(signals)),
   ].join('\n\n')}\n`;
 }
