@@ -4,9 +4,11 @@ import { createRoot } from 'react-dom/client';
 import { App } from './App.tsx';
 import { openSession } from './run/session.ts';
 import { openAddress } from './share/address.ts';
+import { openShortcuts } from './shortcuts.ts';
 import { openTheme } from './theme.ts';
 
 openTheme();
+openShortcuts();
 await openAddress();
 openSession();
 

@@ -118,7 +118,7 @@ export function OutputSide({
   const total = parts.reduce((sum, part) => sum + weight(part), 0) + 0.5;
   const from = Math.max(plan.stackEnd + 8, plan.output - 20);
   const unit = (plan.load - from) / total;
-  const words = plan.arrangement === 'wide' && unit >= 56;
+  const words = plan.arrangement !== 'narrow' && unit >= 56;
   const middle = (top + foot) / 2;
   const x = plan.load;
   let place = from;

@@ -164,7 +164,7 @@ function Loupe({
   /** Potentials of its lower and its upper joint, in figures. */
   ends: readonly [string, string] | null;
 }) {
-  const small = plan.arrangement === 'narrow';
+  const small = plan.stackEnd - plan.stack < 340;
   const width = small ? 58 : 108;
   const height = small ? 54 : 68;
   const x = plan.stack + (small ? 4 : 12);

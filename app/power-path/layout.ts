@@ -28,7 +28,7 @@ export interface Plan {
 }
 
 /** Widths at which the arrangement changes. */
-const WIDE = 1200;
+const WIDE = 1312;
 const MEDIUM = 900;
 /** No step of a short stack is drawn wider. */
 const WIDEST_STEP = 120;
@@ -56,6 +56,7 @@ export function planPath(width: number, sections: number): Plan {
   }
   if (width >= MEDIUM) {
     const load = width - 72;
+    const right = Math.min(306, 140 + Math.max(0, width - 992) * 0.6);
     return {
       arrangement: 'medium',
       supply: 0,
@@ -65,8 +66,8 @@ export function planPath(width: number, sections: number): Plan {
       core: 388,
       scale: 420,
       stack: 456,
-      stackEnd: stackEnd(456, load - 140 - 456),
-      output: load - 122,
+      stackEnd: stackEnd(456, load - right - 456),
+      output: load - right + 18,
       load,
       width,
     };

@@ -52,7 +52,7 @@ export function bayOfPlace(place: string): Bay | null {
 export const useOpenBay = create<{ readonly bay: Bay | null }>(() => ({
   // On a wide page the sheet has a place of its own beside the stairs.
   bay:
-    typeof matchMedia === 'function' && matchMedia('(min-width: 1248px)').matches
+    typeof matchMedia === 'function' && matchMedia('(min-width: 1360px)').matches
       ? 'transformer'
       : null,
 }));

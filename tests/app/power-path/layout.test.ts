@@ -10,7 +10,7 @@ import {
 } from '../../../app/power-path/layout.ts';
 
 const COUNTS = [1, 8, 24, 48];
-const WIDTHS = [328, 360, 704, 899, 900, 1024, 1199, 1200, 1392, 1712];
+const WIDTHS = [328, 360, 704, 899, 900, 992, 1024, 1248, 1311, 1312, 1392, 1712];
 
 const drawn = (width: number, joints: readonly number[], earthed: number | null) => {
   const plan = planPath(width, joints.length - 1);
@@ -55,6 +55,15 @@ test('the steps of 1, 8, 24 and 48 sections join without gap or overlap, inside 
         expect(stairs.earth).toBeCloseTo(stairs.joints[earthed].y, 9);
         expect(stairs.folded).toBe(count >= 9 || !legible(stairs.steps[0]));
       }
+    }
+  }
+});
+
+test('the circuits of up to 8 sections can be read from a page of 1024 pixels on', () => {
+  for (const width of WIDTHS.filter((w) => w >= 992)) {
+    for (let count = 1; count <= 8; count++) {
+      const { stairs } = drawn(width, equalShare(60e3, count, 0), 0);
+      expect(stairs.folded, `${count} at ${width}`).toBe(false);
     }
   }
 });
