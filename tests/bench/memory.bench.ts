@@ -52,7 +52,7 @@ const opened = Run.open(EXAMPLES[0].design);
 if (!opened.ok) throw new Error(opened.problem.message);
 const run = opened.value;
 const begun = performance.now();
-const points: { x: number; y: number; resident: number }[] = [];
+const points: { x: number; y: number }[] = [];
 const every = Math.floor(total / SAMPLES);
 let periods = 0;
 let peak = 0;
@@ -63,7 +63,15 @@ for (const ended of run.advance()) {
   // a process begins with what its parent had.
   const resident = periods % 10 === 0 ? megabytes(process.memoryUsage.rss()) : 0;
   peak = Math.max(peak, resident);
-  if (periods % every === 0) points.push({ x: periods, y: held(), resident: peak });
+  if (periods % every === 0) {
+    points.push({ x: periods, y: held() });
+    if (points.length % 4 === 0) {
+      const { x, y } = points[points.length - 1];
+      console.log(
+        `${String(x).padStart(8)} periods: ${y.toFixed(2)} MB held, ${peak.toFixed(0)} MB resident at most`,
+      );
+    }
+  }
   if (periods === total) break;
 }
 if (run.failed) throw new Error(run.failed.message);
@@ -73,11 +81,6 @@ const seconds = (performance.now() - begun) / 1000;
 const growth = slope(points.slice(points.length / 2)) * 1e5;
 const last = points[points.length - 1];
 const expected = peak + Math.max(0, growth * ((GOAL_PERIODS - total) / 1e5));
-for (const { x, y, resident } of points.filter((_, k) => k % 4 === 3)) {
-  console.log(
-    `${String(x).padStart(8)} periods: ${y.toFixed(2)} MB held, ${resident.toFixed(0)} MB resident at most`,
-  );
-}
 console.log(
   `${periods} periods of “${run.design.name}” in ${seconds.toFixed(0)} s (${(periods / seconds).toFixed(0)} per second)`,
 );
