@@ -207,16 +207,14 @@ export class Run {
     const generation = this.generation;
     const { transient, meter, jointMeter } = this;
     let before = transient.time;
-    const steps = transient.advance();
-    let periods = transient.periods;
-    for (;;) {
-      const turn = steps.next();
-      if (generation !== this.generation) return;
-      if (turn.done) {
-        this.problem = failureProblem(turn.value, transient.time);
+    let { periods } = transient;
+    while (generation === this.generation) {
+      const failure = transient.step();
+      if (failure) {
+        this.problem = failureProblem(failure, transient.time);
         return;
       }
-      // The generator turns into the next period with that period's first step.
+      // A period is over when the first step of the next one has been taken.
       const ended = transient.periods !== periods;
       if (ended) {
         periods = transient.periods;
@@ -227,7 +225,6 @@ export class Run {
       meter.step(h);
       jointMeter.step(h);
       yield ended;
-      if (generation !== this.generation) return;
     }
   }
 

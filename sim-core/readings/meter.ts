@@ -105,13 +105,13 @@ export class PeriodMeter {
     this.sumSquare = make();
     this.low = make();
     this.high = make();
+    this.probes.read();
+    this.last.set(this.probes.values);
     this.begin();
   }
 
-  /** Start a period from the stepper's present values. */
+  /** Start a period from the end of the last step. */
   private begin(): void {
-    this.probes.read();
-    this.last.set(this.probes.values);
     this.low.set(this.last);
     this.high.set(this.last);
     this.sum.fill(0);

@@ -63,6 +63,8 @@ interface Interval {
   readonly h: number;
   readonly eventLevel: number;
   readonly finestLevel: number;
+  /** Length of a step at the finest level, seconds. */
+  readonly unit: number;
   readonly lengths: StepLength[];
 }
 
@@ -81,6 +83,16 @@ export class Transient {
   /** Seconds at which the period in progress began. */
   periodStart: number;
   private readonly firstPhase: number;
+  /** The interval under way, null before the first step, and its place in the pattern. */
+  private under: Interval | null = null;
+  private current = 0;
+  /** Seconds at which it began; how far it has come, in steps of the finest level. */
+  private start = 0;
+  private position = 0;
+  /** Level of the next step. */
+  private level = 0;
+  /** Position at which the next change of a device is expected; no step passes it. */
+  private expected = 0;
   /** Largest magnitude of each state lately (it fades by half every period). */
   readonly peak: Float64Array;
   /** Kind of each state: STATE_GROUPS names them. */
@@ -159,7 +171,8 @@ export class Transient {
     const eventLevel = Math.max(0, Math.ceil(Math.log2(h / event) - 1e-6));
     const halvings = Math.min(MOST_HALVINGS, Math.ceil(Math.log2(h / SHORTEST_STEP)));
     const finestLevel = Math.max(eventLevel, halvings);
-    return { gates, from, coarse, h, eventLevel, finestLevel, lengths: [] };
+    const unit = h / 2 ** finestLevel;
+    return { gates, from, coarse, h, eventLevel, finestLevel, unit, lengths: [] };
   }
 
   private length(interval: Interval, level: number): StepLength {
@@ -195,90 +208,112 @@ export class Transient {
     return k;
   }
 
-  /**
-   * Advance for ever, one accepted step per turn; can be left after any of them.
-   * @returns the failure that ended it
-   */
-  *advance(): Generator<void, StepFailure> {
+  /** Take up the run where it stands: find the interval and what is left of it. */
+  private takeUp(): void {
     let k = this.intervalAt(this.firstPhase);
-    // A run taken up inside an interval walks the rest of it as an interval of its own.
-    let rest: Interval | null = null;
-    const into = this.firstPhase - this.intervals[k].from;
-    if (into > 0) {
-      const { gates, from, coarse, h } = this.intervals[k];
-      const left = coarse * h - into;
-      if (left > 1e-12 * this.pattern.period) {
-        rest = this.interval(gates, from + into, left, Math.max(1, Math.ceil(left / h)));
-      } else k++;
+    const { from, coarse, h, gates } = this.intervals[k];
+    const into = this.firstPhase - from;
+    const left = coarse * h - into;
+    if (into > 0 && left > 1e-12 * this.pattern.period) {
+      // A run taken up inside an interval walks the rest of it as an interval of its own.
+      this.enter(k, this.interval(gates, from + into, left, Math.max(1, Math.ceil(left / h))));
+      return;
     }
-    for (;;) {
-      for (; k < this.intervals.length; k++) {
-        const failure = yield* this.walk(rest ?? this.intervals[k]);
-        rest = null;
-        if (failure) return failure;
-      }
-      k = 0;
-      this.periods++;
-      this.periodStart += this.pattern.period;
-      this.rescale(0.5);
-    }
+    if (into > 0) k++;
+    if (k === this.intervals.length) this.endPeriod();
+    else this.enter(k, this.intervals[k]);
   }
 
-  private *walk(interval: Interval): Generator<void, StepFailure | null> {
+  private enter(k: number, interval: Interval): void {
+    this.current = k;
+    this.under = interval;
+    this.start = this.periodStart + interval.from;
+    this.position = 0;
+    this.expected = 0;
+    // Devices react to the edge at once: the first step is an event.
+    this.level = interval.eventLevel;
+    this.setGates(interval);
+  }
+
+  private endPeriod(): void {
+    this.periods++;
+    this.periodStart += this.pattern.period;
+    this.rescale(0.5);
+    this.enter(0, this.intervals[0]);
+  }
+
+  /**
+   * Take one accepted step, after as many refused ones as it needs. Allocates nothing once the
+   * lengths of the pattern have been met.
+   * @returns the failure that ends the run, or null
+   */
+  step(): StepFailure | null {
     const { stepper } = this;
-    const start = this.periodStart + interval.from;
+    if (this.under === null) this.takeUp();
+    let interval = this.under as Interval;
+    if (this.position >= interval.coarse << interval.finestLevel) {
+      if (this.current + 1 < this.intervals.length) {
+        this.enter(this.current + 1, this.intervals[this.current + 1]);
+      } else this.endPeriod();
+      interval = this.under as Interval;
+    }
     const { eventLevel, finestLevel } = interval;
     const { tolerance } = this.accuracy;
-    const unit = interval.h / 2 ** finestLevel;
-    const total = interval.coarse * 2 ** finestLevel;
-    this.setGates(interval);
-    let position = 0;
-    // Devices react to the edge at once: the first step is an event.
-    let level = eventLevel;
-    // Where the next change of a device is expected; until then no longer step is tried.
-    let expected = 0;
-    while (position < total) {
-      const stride = 2 ** (finestLevel - level);
-      const step = this.length(interval, level);
-      if (!stepper.attempt(step, this.time)) {
+    for (;;) {
+      const { level, position } = this;
+      const stride = 1 << (finestLevel - level);
+      if (!stepper.attempt(this.length(interval, level), this.time)) {
         if (level === finestLevel) return stepper.failure;
-        stepper.reject();
-        this.rejected++;
-        level = Math.min(finestLevel, level + 3);
+        this.refuse(Math.min(finestLevel, level + 3));
         continue;
       }
       const error = stepper.error / tolerance;
-      if (stepper.changed ? level < eventLevel : error > 1 && level < finestLevel) {
-        if (stepper.changed) {
-          const finest = 2 ** (finestLevel - eventLevel);
-          expected = position + Math.floor((stepper.firstChange() * stride) / finest) * finest;
-          do level++;
-          while (level < eventLevel && position + 2 ** (finestLevel - level) > expected);
-        } else level = Math.min(finestLevel, level + (error > 12 ? 2 : 1));
-        stepper.reject();
-        this.rejected++;
+      if (stepper.changed && level < eventLevel) {
+        const finest = 1 << (finestLevel - eventLevel);
+        this.expected = position + Math.floor((stepper.firstChange() * stride) / finest) * finest;
+        let finer = level + 1;
+        while (finer < eventLevel && position + (1 << (finestLevel - finer)) > this.expected) finer++;
+        this.refuse(finer);
+        continue;
+      }
+      if (!stepper.changed && error > 1 && level < finestLevel) {
+        this.refuse(Math.min(finestLevel, level + (error > 12 ? 2 : 1)));
         continue;
       }
       stepper.accept();
-      position += stride;
-      this.time = start + position * unit;
+      this.position += stride;
+      this.time = this.start + this.position * interval.unit;
       this.notePeaks();
-      if (position === expected) {
-        // The change is due in the very next step.
-        level = Math.max(level, eventLevel);
-      } else {
-        // The error grows as the cube of the step: rise as far as that and the grid allow.
-        for (let grown = stepper.changed ? 1 : error * 8; level > 0 && grown < EASY; grown *= 8) {
-          const longer = 2 ** (finestLevel - level + 1);
-          if (position % longer !== 0) break;
-          if (position < expected && position + longer > expected) break;
-          level--;
-        }
-        while (position < expected && position + 2 ** (finestLevel - level) > expected) level++;
-      }
-      yield;
+      this.chooseLevel(interval, error);
+      return null;
     }
-    return null;
+  }
+
+  private refuse(level: number): void {
+    this.stepper.reject();
+    this.rejected++;
+    this.level = level;
+  }
+
+  /** After an accepted step: the longest next step that the error and the grid allow. */
+  private chooseLevel({ eventLevel, finestLevel }: Interval, error: number): void {
+    const { position, expected } = this;
+    if (position === expected) {
+      // The change is due in the very next step.
+      this.level = Math.max(this.level, eventLevel);
+      return;
+    }
+    let { level } = this;
+    // The error grows as the cube of the step.
+    let grown = this.stepper.changed ? 1 : error * 8;
+    for (; level > 0 && grown < EASY; grown *= 8) {
+      const longer = 2 << (finestLevel - level);
+      if ((position & (longer - 1)) !== 0) break;
+      if (position < expected && position + longer > expected) break;
+      level--;
+    }
+    while (position < expected && position + (1 << (finestLevel - level)) > expected) level++;
+    this.level = level;
   }
 
   private notePeaks(): void {
