@@ -75,19 +75,24 @@ function visible<T extends number | null>(values: readonly T[]): readonly T[] {
   return values.map((value) => (value === null ? value : ((Math.round(value / step) * step) as T)));
 }
 
-/** Joint potentials as far as the run has told them, else equal shares of the output voltage. */
+/**
+ * Joint potentials as far as the run has told them, else equal shares of the output voltage; null
+ * where there are none: before the first period, and for an alternating output.
+ */
 function useJoints(): readonly number[] | null {
   const count = useDocument((state) => state.design.sections.count);
   const stack = useDocument((state) => state.design.stack);
+  const alternating = useDocument((state) => state.design.rectifier.kind === 'none');
   // What cannot be seen must not be drawn again: potentials count to a part in sixteen thousand.
   const joints = useRun(useShallow((run) => run.joints && visible(run.joints)));
   const output = useRun((run) => visible([run.readings?.outputVoltage ?? null])[0]);
   return useMemo(() => {
+    if (alternating) return null;
     if (joints && joints.length === count + 1) return joints;
     if (output === null) return null;
     const earthed = stack.earth === 'joint' ? Math.min(stack.joint, count) : null;
     return equalShare(output, count, earthed);
-  }, [joints, output, count, stack]);
+  }, [alternating, joints, output, count, stack]);
 }
 
 /** The stack and what follows it. */

@@ -214,14 +214,14 @@ function Tank({ design, plan, top, rails }: SideProps) {
       {parallelCapacitance !== null && (
         <>
           <Across x={parallel} from={y} to={back} plate={14} />
-          <text className="m center" x={parallel} y={back + 16}>
+          <text className="m end" x={parallel + 10} y={back + 16}>
             C
             <tspan className="index" dy={3}>
               p
             </tspan>
           </text>
           {!narrow && (
-            <text className="center" x={parallel} y={back + 31}>
+            <text className="end" x={parallel + 10} y={back + 31}>
               {value(parallelCapacitance, 'F')}
             </text>
           )}

@@ -63,7 +63,8 @@ export function headOf(
     }
     case 'stack': {
       const n = sections.count;
-      const each = joints === null ? null : (joints[n] - joints[0]) / n;
+      const alternating = design.rectifier.kind === 'none';
+      const each = joints === null || alternating ? null : (joints[n] - joints[0]) / n;
       const words = n === 1 ? '1 section' : `${n} in series`;
       if (each === null) return words;
       if (brief) return n === 1 ? figureText(each, 'V') : `${n} × ${figureText(each, 'V')}`;
