@@ -9,7 +9,7 @@ export const times = ([p, q]: Matrix, x: Pair): Pair => [
   q[0] * x[0] + q[1] * x[1],
 ];
 
-export const add = (x: Pair, y: Pair): Pair => [x[0] + y[0], x[1] + y[1]];
+const add = (x: Pair, y: Pair): Pair => [x[0] + y[0], x[1] + y[1]];
 
 /** x with M x = r (Cramer's rule). */
 export function solvePair([p, q]: Matrix, r: Pair): Pair {
