@@ -114,6 +114,11 @@ export class Run {
   private heat = new Float64Array(PARTS.length);
   private deliveredBefore = 0;
   private deliveredLast = 0;
+  /** Whether the period in progress was begun at its start. */
+  private whole = true;
+  /** Readings and joints from before the last change, until there are new ones. */
+  private earlier: Readings | null = null;
+  private earlierJoints: readonly number[] | null = null;
 
   private constructor(plant: Plant, transient: Transient, accuracy: Accuracy) {
     this.accuracy = accuracy;
@@ -147,6 +152,7 @@ export class Run {
     this.peakStored = Math.max(this.peakStored, this.storedAtStart);
     this.heatBefore.fill(0);
     this.deliveredBefore = 0;
+    this.whole = transient.phase === 0;
     return {
       probes: new Probes(
         stepper,
@@ -176,11 +182,6 @@ export class Run {
   /** Whole drive periods done since rest. */
   get periods(): number {
     return this.pastPeriods + this.transient.periods;
-  }
-
-  /** Seconds since rest at which the last whole drive period ended. */
-  get periodEnd(): number {
-    return this.transient.periodStart;
   }
 
   /** Why the run ended, or null. */
@@ -214,16 +215,15 @@ export class Run {
         this.problem = failureProblem(failure, transient.time);
         return;
       }
-      // A period is over when the first step of the next one has been taken.
+      const h = transient.time - before;
+      before = transient.time;
+      meter.step(h);
+      jointMeter.step(h);
       const ended = transient.periods !== periods;
       if (ended) {
         periods = transient.periods;
         this.closePeriod();
       }
-      const h = transient.time - before;
-      before = transient.time;
-      meter.step(h);
-      jointMeter.step(h);
       yield ended;
     }
   }
@@ -231,8 +231,10 @@ export class Run {
   private closePeriod(): void {
     const { transient } = this;
     const { stepper } = transient;
-    this.meter.close();
-    this.jointMeter.close();
+    // A period that was taken up in its middle has no readings of its own.
+    this.meter.close(this.whole);
+    this.jointMeter.close(this.whole);
+    this.whole = true;
     this.settling.period(stepper.state, transient.peak);
     this.peakStored = Math.max(this.peakStored, stepper.storedEnergy());
     for (let k = 0; k < this.heat.length; k++) {
@@ -252,7 +254,7 @@ export class Run {
 
   /** Mean potentials of joints 0 … S over the last whole period (V); null before there is one. */
   joints(): readonly number[] | null {
-    return this.jointMeter.periods === 0 ? null : Array.from(this.jointMeter.mean);
+    return this.jointMeter.periods === 0 ? this.earlierJoints : Array.from(this.jointMeter.mean);
   }
 
   /** Counts of the work done since the start. */
@@ -291,7 +293,7 @@ export class Run {
           : this.settling.distance * 100,
       stackEnergy: this.transient.stepper.chargedEnergy(['rectifier', 'output']),
     };
-    if (this.meter.periods === 0) return { ...NO_READINGS, ...always };
+    if (this.meter.periods === 0) return { ...(this.earlier ?? NO_READINGS), ...always };
     const { meter } = this;
     const { period } = this.plant.pattern;
     const output = METER['output voltage'];
@@ -352,6 +354,9 @@ export class Run {
     const failure = transient.prime();
     if (failure) return { ok: false, problem: failureProblem(failure, this.time) };
     const old = this.transient.stepper;
+    this.earlier = this.readings();
+    this.earlierJoints =
+      this.joints()?.length === plant.design.sections.count + 1 ? this.joints() : null;
     this.pastPeriods = this.periods;
     this.pastWork = this.work();
     this.pastDelivered += old.delivered;

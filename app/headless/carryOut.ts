@@ -19,7 +19,7 @@ export function carryOut(run: Run, duration: number | null, onStep: () => void):
   let periods = 0;
   for (;;) {
     const turn = steps.next();
-    if (turn.done) return run.state();
+    if (turn.done) break;
     onStep();
     if (turn.value) periods++;
     if (run.time >= end) break;
@@ -27,9 +27,5 @@ export function carryOut(run: Run, duration: number | null, onStep: () => void):
       if (run.settled || periods >= GIVEN_UP_AFTER.periods) break;
     }
   }
-  const state = run.state();
-  // A period is closed by the first step of the next: where one has just ended, take that step.
-  const whole = state.phase < ONE_TIME || state.phase > 1 - ONE_TIME;
-  if (whole) steps.next();
-  return state;
+  return run.state();
 }

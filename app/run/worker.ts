@@ -60,8 +60,7 @@ class HistoryBuffer {
   add(run: Run): void {
     const v = run.extent('output voltage');
     const i = run.extent('primary current');
-    // The first step of the next period is already taken: the period ended before it.
-    if (v && i) this.rows.push([run.periodEnd, v.min, v.max, v.mean, i.min, i.max, i.mean]);
+    if (v && i) this.rows.push([run.time, v.min, v.max, v.mean, i.min, i.max, i.mean]);
   }
 
   take(): HistoryColumns {
@@ -173,13 +172,13 @@ const solver = {
         problem = run.failed;
         break;
       }
+      windows[0].add(run, indices);
       if (turn.value) {
         ended = true;
         history.add(run);
         turnWindows();
         if (run.settled) break;
       }
-      windows[0].add(run, indices);
       if (count % STEPS_PER_LOOK === 0 && performance.now() > until) break;
     }
     const detail = ended || !sent ? detailColumns() : null;

@@ -142,9 +142,9 @@ export class PeriodMeter {
     this.span += h;
   }
 
-  /** Close the period: its statistics become the last whole period's. */
-  close(): void {
-    if (this.span > 0) {
+  /** Close the period: if it is a whole one, its statistics become the last whole period's. */
+  close(whole = true): void {
+    if (whole && this.span > 0) {
       const share = 1 / this.span;
       for (let k = 0; k < this.sum.length; k++) {
         this.mean[k] = this.sum[k] * share;

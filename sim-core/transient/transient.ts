@@ -81,7 +81,7 @@ export class Transient {
   private readonly accuracy: Accuracy;
   private readonly intervals: Interval[];
   /** Seconds at which the period in progress began. */
-  periodStart: number;
+  private periodStart: number;
   private readonly firstPhase: number;
   /** The interval under way, null before the first step, and its place in the pattern. */
   private under: Interval | null = null;
@@ -183,7 +183,8 @@ export class Transient {
   /** Where in the drive period the run stands, 0 ≤ phase < 1. */
   get phase(): number {
     const phase = (this.time - this.periodStart) / this.pattern.period;
-    return phase >= 1 - 1e-12 ? 0 : Math.max(0, phase);
+    // Rounding of the time itself leaves an end that is also a beginning.
+    return phase >= 1 - 1e-9 || phase < 1e-9 ? 0 : phase;
   }
 
   /** Solve the network at the present state, so that every voltage can be read before a step. */
@@ -197,7 +198,8 @@ export class Transient {
   }
 
   private setGates({ gates, from }: Interval): void {
-    const quiet = this.periodStart === 0 && from < this.pattern.quiet * (1 - 1e-9);
+    const first = Math.abs(this.periodStart) < 1e-9 * this.pattern.period;
+    const quiet = first && from < this.pattern.quiet * (1 - 1e-9);
     const bits = quiet ? 0 : gates;
     this.stepper.setGates((gate) => ((bits >> gate) & 1) === 1);
   }
@@ -220,8 +222,7 @@ export class Transient {
       return;
     }
     if (into > 0) k++;
-    if (k === this.intervals.length) this.endPeriod();
-    else this.enter(k, this.intervals[k]);
+    this.enter(k % this.intervals.length, this.intervals[k % this.intervals.length]);
   }
 
   private enter(k: number, interval: Interval): void {
@@ -239,7 +240,6 @@ export class Transient {
     this.periods++;
     this.periodStart += this.pattern.period;
     this.rescale(0.5);
-    this.enter(0, this.intervals[0]);
   }
 
   /**
@@ -252,9 +252,8 @@ export class Transient {
     if (this.under === null) this.takeUp();
     let interval = this.under as Interval;
     if (this.position >= interval.coarse << interval.finestLevel) {
-      if (this.current + 1 < this.intervals.length) {
-        this.enter(this.current + 1, this.intervals[this.current + 1]);
-      } else this.endPeriod();
+      const next = (this.current + 1) % this.intervals.length;
+      this.enter(next, this.intervals[next]);
       interval = this.under as Interval;
     }
     const { eventLevel, finestLevel } = interval;
@@ -272,7 +271,8 @@ export class Transient {
         const finest = 1 << (finestLevel - eventLevel);
         this.expected = position + Math.floor((stepper.firstChange() * stride) / finest) * finest;
         let finer = level + 1;
-        while (finer < eventLevel && position + (1 << (finestLevel - finer)) > this.expected) finer++;
+        while (finer < eventLevel && position + (1 << (finestLevel - finer)) > this.expected)
+          finer++;
         this.refuse(finer);
         continue;
       }
@@ -285,6 +285,8 @@ export class Transient {
       this.time = this.start + this.position * interval.unit;
       this.notePeaks();
       this.chooseLevel(interval, error);
+      const last = this.current === this.intervals.length - 1;
+      if (last && this.position >= interval.coarse << finestLevel) this.endPeriod();
       return null;
     }
   }

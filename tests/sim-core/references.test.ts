@@ -75,22 +75,6 @@ function compare(reference: Reference, accuracy: Accuracy) {
   let beforeTime = 0;
   let done = 0;
   for (const ended of run.advance()) {
-    if (ended) {
-      const v = run.extent('output voltage');
-      const i = run.extent('primary current');
-      if (!v || !i) throw new Error('a period ended without extents');
-      outputError = Math.max(
-        outputError,
-        Math.abs(v.mean - output.mean[done]) / largestOutput,
-        Math.abs(v.max - output.max[done]) / largestOutput,
-        Math.abs(v.min - output.min[done]) / largestOutput,
-      );
-      const peak = Math.max(Math.abs(i.min), Math.abs(i.max));
-      const expected = Math.max(Math.abs(primary.min[done]), Math.abs(primary.max[done]));
-      peakError = Math.max(peakError, Math.abs(peak - expected) / largestPrimary);
-      done++;
-      if (done === periods) break;
-    }
     const now = signals.map((k) => run.value(k));
     reference.windows.forEach((window, w) => {
       for (; next[w] < window.count; next[w]++) {
@@ -107,6 +91,22 @@ function compare(reference: Reference, accuracy: Accuracy) {
     });
     before = now;
     beforeTime = run.time;
+    if (ended) {
+      const v = run.extent('output voltage');
+      const i = run.extent('primary current');
+      if (!v || !i) throw new Error('a period ended without extents');
+      outputError = Math.max(
+        outputError,
+        Math.abs(v.mean - output.mean[done]) / largestOutput,
+        Math.abs(v.max - output.max[done]) / largestOutput,
+        Math.abs(v.min - output.min[done]) / largestOutput,
+      );
+      const peak = Math.max(Math.abs(i.min), Math.abs(i.max));
+      const expected = Math.max(Math.abs(primary.min[done]), Math.abs(primary.max[done]));
+      peakError = Math.max(peakError, Math.abs(peak - expected) / largestPrimary);
+      done++;
+      if (done === periods) break;
+    }
   }
   const waveforms = Object.fromEntries(
     WAVEFORMS.map((name, k) => [
