@@ -181,6 +181,6 @@ export function restart(): void {
 }
 
 /** Show another section's winding in the lanes, counted from 1. */
-export function showSection(section: number): void {
+function showSection(section: number): void {
   useRun.setState({ section });
 }

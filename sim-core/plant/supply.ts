@@ -13,7 +13,7 @@ export const POSITIVE_RAIL = 'positive rail';
 export const NEGATIVE_RAIL = 'negative rail';
 
 /** Name of the supply's element. */
-export const SUPPLY = 'supply';
+const SUPPLY = 'supply';
 
 /** Current into the positive terminal of the supply against the bus voltage. */
 function supplyCurve(design: Design): Piece[] {

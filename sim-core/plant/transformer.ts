@@ -19,10 +19,10 @@ export const windingStart = (k: number): string => `section ${k}, end a`;
 export const windingEnd = (k: number): string => `section ${k}, end b`;
 
 /** Name of section k's winding. */
-export const windingName = (k: number): string => `section ${k} winding`;
+const windingName = (k: number): string => `section ${k} winding`;
 
 /** The values of section k, counted from 1, with what it overrides. */
-export function windingOf(design: Design, k: number): WindingValues {
+function windingOf(design: Design, k: number): WindingValues {
   const override = design.overrides.find((o) => o.section === k);
   return { ...design.sections, ...override };
 }

@@ -18,7 +18,7 @@ import { factor, solve } from '../sparse/ldl.ts';
 import { FactorCache } from './factors.ts';
 
 /** γ of the method. */
-export const GAMMA = 1 - Math.SQRT1_2;
+const GAMMA = 1 - Math.SQRT1_2;
 const KAPPA = (1 - GAMMA) / GAMMA;
 
 /**
