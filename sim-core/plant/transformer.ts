@@ -22,7 +22,7 @@ export const windingEnd = (k: number): string => `section ${k}, end b`;
 const windingName = (k: number): string => `section ${k} winding`;
 
 /** The values of section k, counted from 1, with what it overrides. */
-function windingOf(design: Design, k: number): WindingValues {
+export function windingOf(design: Design, k: number): WindingValues {
   const override = design.overrides.find((o) => o.section === k);
   return { ...design.sections, ...override };
 }

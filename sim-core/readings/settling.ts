@@ -87,7 +87,8 @@ export class Settling {
       if (last < 0) known = false;
       else worst = Math.max(worst, left(share, last));
     }
-    this.distance = known ? worst : null;
+    // After the stride has grown the last estimate stands until there is a new one.
+    if (known) this.distance = worst;
     if (this.strides % STRIDES_PER_LENGTH === 0) {
       this.stride *= 2;
       this.lastChange.fill(-1);

@@ -176,6 +176,10 @@ export class Stepper {
   private readonly stage1: Float64Array;
   private readonly stage2: Float64Array;
   private readonly xBefore: Float64Array;
+  private readonly spare: Float64Array;
+  private readonly spareX: Float64Array;
+  private readonly spareHeat = new Float64Array(PARTS.length);
+  private readonly spareCurrent: Float64Array;
   private readonly slope0: Float64Array;
   private readonly slope1: Float64Array;
   private readonly slope2: Float64Array;
@@ -260,6 +264,9 @@ export class Stepper {
     const size = n + system.pattern.nnz;
     this.x = new Float64Array(n + 1);
     this.xBefore = new Float64Array(n + 1);
+    this.spare = new Float64Array(this.nS);
+    this.spareX = new Float64Array(n + 1);
+    this.spareCurrent = new Float64Array(devices.length);
     this.sources = new Float64Array(n + 1);
     this.trial = new Float64Array(n + 1);
     this.assembled = new Float64Array(size);
@@ -411,6 +418,43 @@ export class Stepper {
     return true;
   }
 
+  /**
+   * Look again at the step just attempted, in which a device has changed its piece. Where the
+   * step is long beside a time constant, stage 2 starts from an extrapolated history, and a
+   * diode may keep what only overshot: it lets charge into a capacitor and never out again. One
+   * stage of implicit Euler over the whole step extrapolates nothing. Where both end on the same
+   * pieces the step stands; where not, the Euler step takes its place. Allocates nothing once the
+   * length has been met.
+   * @returns false if the stage could not be solved; `failure` then says why
+   */
+  reconsider(step: StepLength, time: number): boolean {
+    const { h } = step;
+    const keyA = this.keyA;
+    const keyB = this.keyB;
+    copy(this.stage2, this.spare);
+    copy(this.x, this.spareX);
+    const { work } = this;
+    copy(this.heat, this.spareHeat);
+    copy(this.deviceCurrent, this.spareCurrent);
+    for (let k = 0; k < this.heat.length; k++) this.heat[k] = 0;
+    this.work = 0;
+    if (!this.stage(this.length(h / GAMMA), time + h, h, this.state, this.stage2)) return false;
+    if (this.keyA === keyA && this.keyB === keyB) {
+      copy(this.spare, this.stage2);
+      copy(this.spareX, this.x);
+      copy(this.spareHeat, this.heat);
+      copy(this.spareCurrent, this.deviceCurrent);
+      this.work = work;
+      return true;
+    }
+    copy(this.stage2, this.stage1);
+    for (let i = 0; i < this.nS; i++) {
+      this.slope2[i] = (this.stage2[i] - this.state[i]) / h;
+      this.slope1[i] = this.slope2[i];
+    }
+    return true;
+  }
+
   /** Whether the error of the last attempt could be estimated (not right after a gating edge). */
   get estimated(): boolean {
     return this.slopeKnown;
@@ -464,12 +508,15 @@ export class Stepper {
     return this.pieceSlope[p] * fluxLinkage + this.pieceOffset[p];
   }
 
-  /** Forget the step just attempted: devices return to their pieces. */
-  reject(): void {
+  /**
+   * Forget the step just attempted: devices return to their pieces.
+   * @param keepVoltages  leave the node voltages as the attempt found them
+   */
+  reject(keepVoltages = false): void {
     for (let d = 0; d < this.piece.length; d++) {
       if (this.piece[d] !== this.pieceBefore[d]) this.move(d, this.pieceBefore[d]);
     }
-    copy(this.xBefore, this.x);
+    if (!keepVoltages) copy(this.xBefore, this.x);
   }
 
   /**

@@ -192,8 +192,10 @@ export class Transient {
     const at = this.intervalAt(this.time - this.periodStart);
     this.setGates(this.intervals[at]);
     const instant = this.length(this.intervals[at], this.intervals[at].eventLevel);
-    if (!this.stepper.attempt(instant, this.time)) return this.stepper.failure;
-    this.stepper.reject();
+    const { stepper } = this;
+    if (!stepper.attempt(instant, this.time)) return stepper.failure;
+    if (stepper.changed && !stepper.reconsider(instant, this.time)) return stepper.failure;
+    stepper.reject(true);
     return null;
   }
 
@@ -261,7 +263,8 @@ export class Transient {
     for (;;) {
       const { level, position } = this;
       const stride = 1 << (finestLevel - level);
-      if (!stepper.attempt(this.length(interval, level), this.time)) {
+      const step = this.length(interval, level);
+      if (!stepper.attempt(step, this.time)) {
         if (level === finestLevel) return stepper.failure;
         this.refuse(Math.min(finestLevel, level + 3));
         continue;
@@ -280,6 +283,7 @@ export class Transient {
         this.refuse(Math.min(finestLevel, level + (error > 12 ? 2 : 1)));
         continue;
       }
+      if (stepper.changed && !stepper.reconsider(step, this.time)) return stepper.failure;
       stepper.accept();
       this.position += stride;
       this.time = this.start + this.position * interval.unit;
