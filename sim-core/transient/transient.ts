@@ -38,12 +38,16 @@ const MOST_HALVINGS = 22;
 /** A longer step is tried when its error should stay below this share of the tolerance. */
 const EASY = 0.5;
 
+/** Above this share of the tolerance the error is worth a solve to filter. */
+const FILTER = 1;
+
 /** Share of a group's largest peak below which a state's own smallness no longer counts. */
 const LEAST_SCALE = 0.02;
 
 /**
  * Kinds of state whose magnitudes are comparable, each with the share of the tolerance it is
- * allowed. Currents of the primary and flux linkage decay slowest, so their errors pile up.
+ * allowed. Currents of the primary and flux linkage decay slowest, so their errors pile up. The
+ * output capacitances of the switches swing within nanoseconds: what counts is when, not how.
  */
 export const STATE_GROUPS = [
   { name: 'voltages of the high side', share: 1 },
@@ -51,6 +55,7 @@ export const STATE_GROUPS = [
   { name: 'winding currents', share: 1 },
   { name: 'primary currents', share: 0.3 },
   { name: 'flux linkage', share: 0.3 },
+  { name: 'voltages of the switches', share: 20 },
 ] as const;
 
 /** One interval of the gate pattern with its step lengths by level. */
@@ -128,9 +133,10 @@ export class Transient {
     });
     // Capacitor voltages are compared with those of their own side, windings with each other.
     const { network: net } = this.stepper;
-    const low = (part: Part): boolean => part === 'supply' || part === 'bridge' || part === 'tank';
+    const kind = (part: Part): number =>
+      part === 'bridge' ? 5 : part === 'supply' || part === 'tank' ? 1 : 0;
     this.group = Int32Array.from([
-      ...net.capacitors.map((e) => (low(e.part) ? 1 : 0)),
+      ...net.capacitors.map((e) => kind(e.part)),
       ...net.inductors.map((e) => (e.ratio !== 0 ? 2 : 3)),
       ...net.cores.map(() => 4),
     ]);
@@ -269,7 +275,8 @@ export class Transient {
         this.refuse(Math.min(finestLevel, level + 3));
         continue;
       }
-      const error = stepper.error / tolerance;
+      let error = stepper.error / tolerance;
+      if (!stepper.changed && error > FILTER) error = stepper.filteredError(step) / tolerance;
       if (stepper.changed && level < eventLevel) {
         const finest = 1 << (finestLevel - eventLevel);
         this.expected = position + Math.floor((stepper.firstChange() * stride) / finest) * finest;
