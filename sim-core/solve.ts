@@ -63,6 +63,32 @@ export interface Work {
   readonly solves: number;
 }
 
+/** What reads a transient: made anew for every design that is put in force. */
+interface Instruments {
+  readonly signals: readonly Signal[];
+  readonly probes: Probes;
+  readonly meter: PeriodMeter;
+  readonly joints: PeriodMeter;
+  readonly settling: Settling;
+}
+
+function instrumentsFor(plant: Plant, { stepper, group }: Transient): Instruments {
+  const terms = (name: string) => plant.signals.find((s) => s.name === name)?.terms ?? [];
+  const joints = Array.from({ length: plant.design.sections.count + 1 }, (_, k) =>
+    terms(`joint ${k} potential`),
+  );
+  return {
+    signals: plant.signals.map(({ name, unit, bay }) => ({ name, unit, bay })),
+    probes: new Probes(
+      stepper,
+      plant.signals.map((s) => s.terms),
+    ),
+    meter: new PeriodMeter(stepper, METERED.map(terms)),
+    joints: new PeriodMeter(stepper, joints),
+    settling: new Settling(stepper.weights().map(Math.abs), group, STATE_GROUPS.length),
+  };
+}
+
 /** Words for a failure of the engine. */
 function failureProblem(failure: StepFailure, time: number): Problem {
   const at = `at ${(time * 1e3).toPrecision(6)} ms`;
@@ -90,14 +116,9 @@ function failureProblem(failure: StepFailure, time: number): Problem {
 
 /** A run in progress. */
 export class Run {
-  /** The signals that can be read, in the order of `value`. */
-  signals: readonly Signal[] = [];
   private plant: Plant;
   private transient: Transient;
-  private probes: Probes;
-  private meter: PeriodMeter;
-  private jointMeter: PeriodMeter;
-  private settling: Settling;
+  private instruments: Instruments;
   private readonly accuracy: Accuracy;
   private generation = 0;
   private problem: Problem | null = null;
@@ -124,11 +145,8 @@ export class Run {
     this.accuracy = accuracy;
     this.plant = plant;
     this.transient = transient;
-    const { probes, meter, jointMeter, settling } = this.instruments();
-    this.probes = probes;
-    this.meter = meter;
-    this.jointMeter = jointMeter;
-    this.settling = settling;
+    this.instruments = instrumentsFor(plant, transient);
+    this.beginCounting();
   }
 
   /**
@@ -143,30 +161,18 @@ export class Run {
     return { ok: true, value: new Run(plant, transient, accuracy) };
   }
 
-  private instruments() {
-    const { plant, transient } = this;
-    const { stepper } = transient;
-    this.signals = plant.signals.map(({ name, unit, bay }) => ({ name, unit, bay }));
-    const terms = (name: string) => plant.signals.find((s) => s.name === name)?.terms ?? [];
-    this.storedAtStart = stepper.storedEnergy();
+  /** Energies are counted from where the transient in force began. */
+  private beginCounting(): void {
+    this.storedAtStart = this.transient.stepper.storedEnergy();
     this.peakStored = Math.max(this.peakStored, this.storedAtStart);
     this.heatBefore.fill(0);
     this.deliveredBefore = 0;
-    this.whole = transient.phase === 0;
-    return {
-      probes: new Probes(
-        stepper,
-        plant.signals.map((s) => s.terms),
-      ),
-      meter: new PeriodMeter(stepper, METERED.map(terms)),
-      jointMeter: new PeriodMeter(
-        stepper,
-        Array.from({ length: plant.design.sections.count + 1 }, (_, k) =>
-          terms(`joint ${k} potential`),
-        ),
-      ),
-      settling: new Settling(stepper.weights().map(Math.abs), transient.group, STATE_GROUPS.length),
-    };
+    this.whole = this.transient.phase === 0;
+  }
+
+  /** The signals that can be read, in the order of `value`. */
+  get signals(): readonly Signal[] {
+    return this.instruments.signals;
   }
 
   /** The design that runs now. */
@@ -191,12 +197,12 @@ export class Run {
 
   /** Whether the estimated distance to the steady state is below SETTLED_DISTANCE. */
   get settled(): boolean {
-    return this.settling.settled;
+    return this.instruments.settling.settled;
   }
 
   /** Present value of a signal, by its place in `signals`. */
   value(signal: number): number {
-    return this.probes.value(signal);
+    return this.instruments.probes.value(signal);
   }
 
   /**
@@ -206,7 +212,8 @@ export class Run {
    */
   *advance(): Generator<boolean, void> {
     const generation = this.generation;
-    const { transient, meter, jointMeter } = this;
+    const { transient } = this;
+    const { meter, joints } = this.instruments;
     let before = transient.time;
     let { periods } = transient;
     while (generation === this.generation) {
@@ -218,7 +225,7 @@ export class Run {
       const h = transient.time - before;
       before = transient.time;
       meter.step(h);
-      jointMeter.step(h);
+      joints.step(h);
       const ended = transient.periods !== periods;
       if (ended) {
         periods = transient.periods;
@@ -231,11 +238,12 @@ export class Run {
   private closePeriod(): void {
     const { transient } = this;
     const { stepper } = transient;
+    const { meter, joints, settling } = this.instruments;
     // A period that was taken up in its middle has no readings of its own.
-    this.meter.close(this.whole);
-    this.jointMeter.close(this.whole);
+    meter.close(this.whole);
+    joints.close(this.whole);
     this.whole = true;
-    this.settling.period(stepper.state, transient.peak);
+    settling.period(stepper.state, transient.peak);
     this.peakStored = Math.max(this.peakStored, stepper.storedEnergy());
     for (let k = 0; k < this.heat.length; k++) {
       this.heat[k] = stepper.dissipated[k] - this.heatBefore[k];
@@ -247,14 +255,16 @@ export class Run {
 
   /** Extremes and mean over the last whole period; null before there is one. */
   extent(name: (typeof METERED)[number]): Extent | null {
-    if (this.meter.periods === 0) return null;
+    const { meter } = this.instruments;
+    if (meter.periods === 0) return null;
     const k = METER[name];
-    return { min: this.meter.min[k], max: this.meter.max[k], mean: this.meter.mean[k] };
+    return { min: meter.min[k], max: meter.max[k], mean: meter.mean[k] };
   }
 
   /** Mean potentials of joints 0 … S over the last whole period (V); null before there is one. */
   joints(): readonly number[] | null {
-    return this.jointMeter.periods === 0 ? this.earlierJoints : Array.from(this.jointMeter.mean);
+    const { joints } = this.instruments;
+    return joints.periods === 0 ? this.earlierJoints : Array.from(joints.mean);
   }
 
   /** Counts of the work done since the start. */
@@ -285,16 +295,16 @@ export class Run {
   /** All readings; those of a period are null before the first whole one. */
   readings(): Readings {
     const audit = this.audit();
+    const { meter, settling } = this.instruments;
     const always = {
       energyAudit: audit === null ? null : audit * 100,
       settledDistance:
-        this.settling.distance === null || !Number.isFinite(this.settling.distance)
+        settling.distance === null || !Number.isFinite(settling.distance)
           ? null
-          : this.settling.distance * 100,
+          : settling.distance * 100,
       stackEnergy: this.transient.stepper.chargedEnergy(['rectifier', 'output']),
     };
-    if (this.meter.periods === 0) return { ...(this.earlier ?? NO_READINGS), ...always };
-    const { meter } = this;
+    if (meter.periods === 0) return { ...(this.earlier ?? NO_READINGS), ...always };
     const { period } = this.plant.pattern;
     const output = METER['output voltage'];
     const primary = METER['primary current'];
@@ -366,11 +376,8 @@ export class Run {
     this.transient = transient;
     this.generation++;
     this.problem = null;
-    const { probes, meter, jointMeter, settling } = this.instruments();
-    this.probes = probes;
-    this.meter = meter;
-    this.jointMeter = jointMeter;
-    this.settling = settling;
+    this.instruments = instrumentsFor(plant, transient);
+    this.beginCounting();
     return { ok: true, value: undefined };
   }
 }
