@@ -74,7 +74,8 @@ function takeChunk(chunk: Chunk): void {
   awake = chunk.status === 'running';
   const { settledAfter } = useRun.getState();
   useRun.setState({
-    state: chunk.status,
+    // Held while this slice was still being computed.
+    state: held && awake ? 'held' : chunk.status,
     ...(chunk.problem ? { problem: chunk.problem } : {}),
     time: chunk.time,
     settledAfter: chunk.status === 'settled' ? (settledAfter ?? chunk.time - changedAt) : null,
@@ -107,7 +108,9 @@ async function pull(): Promise<void> {
             state: held ? 'held' : 'running',
           });
         } else {
-          useRun.setState({ problem: opened.problem });
+          // What the page shows cannot run; what did run is no longer what the page shows.
+          awake = false;
+          useRun.setState({ state: 'failed', problem: opened.problem });
         }
       } else if (watch) {
         // The lanes show another signal: compute on, if only for two periods.

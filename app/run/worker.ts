@@ -101,6 +101,10 @@ function turnWindows(): void {
   windows.unshift(oldest);
 }
 
+function detailIsFull(): boolean {
+  return windows.slice(1).every((w) => w.length > 0);
+}
+
 /** The last whole periods, or what there is of the first one. */
 function detailColumns(): DetailColumns | null {
   if (!run) return null;
@@ -177,14 +181,15 @@ const solver = {
         ended = true;
         history.add(run);
         turnWindows();
-        if (run.settled) break;
+        if (run.settled && detailIsFull()) break;
       }
       if (count % STEPS_PER_LOOK === 0 && performance.now() > until) break;
     }
+    // A settled run goes on until the detail is full, so that newly watched signals are seen.
     const detail = ended || !sent ? detailColumns() : null;
     sent ||= detail !== null;
     const chunk: Chunk = {
-      status: problem ? 'failed' : run.settled ? 'settled' : 'running',
+      status: problem ? 'failed' : run.settled && detailIsFull() ? 'settled' : 'running',
       problem,
       time: run.time,
       periods: run.periods,
