@@ -3,7 +3,7 @@ import { useCallback, useState } from 'react';
 import type { QuantityField } from '../../sim-core/index.ts';
 import { unitOf } from '../figure.ts';
 import { useRun } from '../run/store.ts';
-import { ticksBetween } from '../scale.ts';
+import { type Tick, ticksBetween } from '../scale.ts';
 
 const AXIS = 18.5;
 /** Share of the value that the tape shows on either side of it. */
@@ -12,6 +12,27 @@ const REACH = 0.11;
 const LEAST_WIDTH = 190;
 /** Room for the words at the end of the upper scale. */
 const WORDS = 92;
+
+/** Widths of a digit and of the space after a figure, CSS pixels. */
+const DIGIT = 7;
+const SPACE = 7;
+
+/** Ticks from `from` to `to` over so many pixels, as close as their figures can be read. */
+function readableTicks(
+  from: number,
+  to: number,
+  width: number,
+  figure: (value: number) => string,
+): readonly Tick[] {
+  for (let most = Math.floor(width / (2 * DIGIT + SPACE)); most > 1; most--) {
+    const ticks = ticksBetween(from, to, most);
+    const figures = ticks.filter(({ major }) => major);
+    const longest = Math.max(0, ...figures.map(({ value }) => figure(value).length));
+    const room = figures.length < 2 ? 0 : figures[1].value - figures[0].value;
+    if ((room / (to - from)) * width >= longest * DIGIT + SPACE) return ticks;
+  }
+  return ticksBetween(from, to, 1);
+}
 
 /** A scale around `value`. With `ratio` it also carries the output, once the run has settled. */
 export function Tape({
@@ -43,12 +64,14 @@ export function Tape({
   const to = Math.min(field.max, value + half);
   const x = (v: number) => width / 2 + ((v - value) / half) * (width / 2);
   const { divisor } = unitOf(Math.max(value, half), field.unit);
-  const below = ticksBetween(from, to, Math.max(2, Math.floor(width / 27)));
+  const figureBelow = (v: number) => String(Number((v / divisor).toPrecision(6)));
+  const below = readableTicks(from, to, x(to) - x(from), figureBelow);
   const output = perValue === null ? null : unitOf(perValue * value, 'V');
+  const figureAbove = (v: number) => String(Number((v / (output?.divisor ?? 1)).toPrecision(4)));
   const above =
     perValue === null
       ? []
-      : ticksBetween(from * perValue, to * perValue, Math.max(2, Math.floor(width / 30)));
+      : readableTicks(from * perValue, to * perValue, x(to) - x(from), figureAbove);
   const middle = width / 2;
 
   return (
@@ -61,7 +84,7 @@ export function Tape({
               <path className="tick" d={`M${x(v)} ${AXIS}v${major ? 8 : 4}`} />
               {major && x(v) > 10 && x(v) < width - 10 && (
                 <text className="m center" x={x(v)} y={37}>
-                  {Number((v / divisor).toPrecision(6))}
+                  {figureBelow(v)}
                 </text>
               )}
             </g>
@@ -75,7 +98,7 @@ export function Tape({
                 <g key={v}>
                   <path className="tick" d={`M${x(v / perValue)} ${AXIS}v-4`} />
                   <text className="m center" x={x(v / perValue)} y={12}>
-                    {Number((v / (output?.divisor ?? 1)).toPrecision(4))}
+                    {figureAbove(v)}
                   </text>
                 </g>
               ),

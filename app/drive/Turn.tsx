@@ -14,6 +14,8 @@ import { Tape } from './Tape.tsx';
 /** Pixels of vertical drag, and of wheel travel, to a step. */
 const DRAG = 12;
 const WHEEL = 60;
+/** More characters than this have no room in the largest size on most screens. */
+const LONG = 5;
 
 const shiftOf = (event: { shiftKey: boolean; altKey: boolean }) =>
   event.shiftKey ? 1 : event.altKey ? -1 : 0;
@@ -191,7 +193,7 @@ export function Turn({
         {field.label}
       </span>
       {typing === null ? (
-        <div className="big">
+        <div className={shown.digits.length > LONG ? 'big long' : 'big'}>
           {/* The ref callback also wires the wheel, hence the small merge. */}
           <div
             ref={(element) => {

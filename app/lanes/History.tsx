@@ -107,6 +107,27 @@ function drawStrip(scene: Scene) {
   };
   const crisp = (value: number) => Math.round(value - 0.5) + 0.5;
 
+  // The fan that opens the window to the width of the lanes: under everything else.
+  let bracket: { readonly from: number; readonly to: number } | null = null;
+  if (scene.window !== null) {
+    const middle = (x(scene.window[0]) + x(scene.window[1])) / 2;
+    const half = Math.max(BRACKET, x(scene.window[1]) - x(scene.window[0])) / 2;
+    const from = Math.round(middle - half);
+    const to = Math.round(middle + half);
+    bracket = { from, to };
+    c.fillStyle = paint.grid;
+    c.globalAlpha = 0.55;
+    c.beginPath();
+    c.moveTo(from, PLOT_BOTTOM);
+    c.lineTo(to, PLOT_BOTTOM);
+    c.lineTo(to, FAN_TOP);
+    c.lineTo(right, HEIGHT);
+    c.lineTo(left, HEIGHT);
+    c.lineTo(from, FAN_TOP);
+    c.fill();
+    c.globalAlpha = 1;
+  }
+
   // Figures and grid.
   const ticks = timeTicks(timeLimit, (right - left) / TICK_ROOM);
   const time = axisUnit(timeLimit, 's');
@@ -152,48 +173,33 @@ function drawStrip(scene: Scene) {
   write(top, right + 6, PLOT_TOP + 4, 'left');
   write('0', right + 6, PLOT_BOTTOM + 4, 'left');
 
-  // Changes: a tick each, and the newest labels for which there is room.
+  // Changes: a tick each, and the newest labels for which there is room. Settling comes last.
+  const labels = history.marks.map(({ time: at, label }) => ({ at: x(at), label }));
+  if (scene.settled !== null) labels.push({ at: x(scene.settled), label: 'settled' });
   stroke(paint.secondInk, 1, [2, 2], () => {
     for (const mark of history.marks) {
       segment(crisp(x(mark.time)), PLOT_TOP - 4, crisp(x(mark.time)), PLOT_BOTTOM);
     }
   });
+  if (scene.settled !== null) {
+    const at = crisp(x(scene.settled));
+    stroke(paint.secondInk, 1, [], () => segment(at, PLOT_TOP - 4, at, PLOT_BOTTOM));
+  }
   let free = right + rightRoom;
-  for (const mark of [...history.marks].reverse()) {
-    const at = x(mark.time);
-    const room = c.measureText(mark.label).width + 8;
-    if (at + room <= free) write(mark.label, at + 4, PLOT_TOP - 6, 'left');
+  for (const { at, label } of labels.reverse()) {
+    const room = c.measureText(label).width + 8;
+    if (at + room <= free) write(label, at + 4, PLOT_TOP - 6, 'left');
     else if (Math.min(at, free) - room >= 0 && at <= free) {
-      write(mark.label, at - 4, PLOT_TOP - 6, 'right');
+      write(label, at - 4, PLOT_TOP - 6, 'right');
       free = at - room;
       continue;
     } else continue;
     free = at;
   }
-  if (scene.settled !== null) {
-    const at = x(scene.settled);
-    stroke(paint.secondInk, 1, [], () =>
-      segment(crisp(at), PLOT_BOTTOM - 8, crisp(at), PLOT_BOTTOM),
-    );
-    const fits = at + c.measureText('settled').width + 8 < right;
-    write('settled', fits ? at + 4 : at - 4, PLOT_BOTTOM - 4, fits ? 'left' : 'right');
-  }
 
-  // The window in detail: a bracket, and the fan that opens it to the width of the lanes.
-  if (scene.window !== null) {
-    const middle = (x(scene.window[0]) + x(scene.window[1])) / 2;
-    const half = Math.max(BRACKET, x(scene.window[1]) - x(scene.window[0])) / 2;
-    const from = Math.round(middle - half);
-    const to = Math.round(middle + half);
-    c.fillStyle = paint.handWash;
-    c.beginPath();
-    c.moveTo(from, PLOT_BOTTOM);
-    c.lineTo(to, PLOT_BOTTOM);
-    c.lineTo(to, FAN_TOP);
-    c.lineTo(right, HEIGHT);
-    c.lineTo(left, HEIGHT);
-    c.lineTo(from, FAN_TOP);
-    c.fill();
+  // The window in detail: its bracket, over everything.
+  if (bracket !== null) {
+    const { from, to } = bracket;
     stroke(paint.ink, 2, [], () => {
       for (const [edge, inward] of [
         [from, 3],

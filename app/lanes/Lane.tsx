@@ -19,6 +19,9 @@ const MOST_SAMPLES = 2500;
 const KNEE_COMES = 4;
 const KNEE_LEAVES = 8;
 
+/** A value below this share of its axis is drawn at zero, and is read as zero. */
+const UNSEEN = 1e-6;
+
 /** Value of one trace at the cursor, in words. */
 interface ReadOut {
   readonly name: string;
@@ -173,7 +176,10 @@ export function Lane({ words, timed, section, heading, note, ref }: Properties) 
         return words.traces.map((trace, i) => {
           const column = samples[i];
           const known = at !== null && column !== null && time.length > 0;
-          const text = known ? figureText(valueAt(time, column, at), trace.unit) : '';
+          const value = known ? valueAt(time, column, at) : 0;
+          const { low, high } = state[trace.side];
+          const seen = Math.abs(value) < UNSEEN * Math.max(-low, high) ? 0 : value;
+          const text = known ? figureText(seen, trace.unit) : '';
           writeText(values.current[i], text);
           return { name: names[i], text };
         });

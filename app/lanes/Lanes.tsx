@@ -23,8 +23,11 @@ const COARSE_STEP = 10;
 /** Where the cursor stands at first, as a share of the window. */
 const FIRST_CURSOR = 0.25;
 
-/** Screens from this width on (CSS pixels) have room for taller plots. */
-const TALL_FROM = 1600;
+/** How much taller the plots are on screens at least this wide (CSS pixels), the widest first. */
+const STRETCHES = [
+  { from: 1600, stretch: 1.5 },
+  { from: 900, stretch: 1.25 },
+] as const;
 
 /** Quiet time after which the table for screen readers follows the plots, milliseconds. */
 const TABLE_DELAY = 500;
@@ -122,7 +125,7 @@ export function Lanes() {
         width: area.box.width,
         leftRoom: area.leftRoom,
         rightRoom: area.rightRoom,
-        stretch: innerWidth >= TALL_FROM ? 1.5 : 1,
+        stretch: STRETCHES.find(({ from }) => innerWidth >= from)?.stretch ?? 1,
       };
       eachLane((lane) => lane.resize(frame));
     }

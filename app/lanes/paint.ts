@@ -16,7 +16,6 @@ const PAINTS = {
   thirdInk: '--ink-3',
   rule: '--rule',
   grid: '--grid',
-  handWash: '--hand-wash',
 } as const;
 
 /** Every colour a canvas uses, and the typeface of its figures. */

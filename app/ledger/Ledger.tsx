@@ -1,4 +1,4 @@
-/** The ledger: every reading with its definition, then what the engine did for them. */
+/** The ledger: every reading with its definition, and what the engine did for them. */
 import './ledger.css';
 import { type ReactNode, useState } from 'react';
 import { READINGS, type ReadingName, type Readings } from '../../sim-core/index.ts';
@@ -88,7 +88,7 @@ export function Ledger() {
           ))}
         </tbody>
       </table>
-      <table>
+      <table className="engine">
         <caption>
           <div className="ledger-head">
             <span className="ledger-title">Engine</span>{' '}

@@ -172,7 +172,7 @@ function Drawing({
 
 function PrimaryHeads({ plan, end }: { plan: Plan; end: number }) {
   const brief = plan.arrangement !== 'wide';
-  const gap = plan.arrangement === 'narrow' ? 8 : plan.arrangement === 'medium' ? 12 : 20;
+  const gap = plan.arrangement === 'narrow' ? 8 : 12;
   return (
     <>
       <Head bay="supply" x={plan.supply} end={plan.bridge - gap} brief={brief} />
@@ -195,7 +195,7 @@ function SecondaryHeads({ plan }: { plan: Plan }) {
     <>
       <Head bay="stack" x={narrow ? 0 : plan.scale + 14} end={output - gap} brief={narrow} />
       {plan.arrangement === 'wide' && (
-        <span className="path-note" style={{ right: plan.width - output + gap }}>
+        <span className="path-note" style={{ right: plan.width - output + gap + 16 }}>
           {highest < LEAST_SPAN
             ? 'no steady voltage: steps drawn equal'
             : `height is potential to earth, ${unitOf(highest, 'V').unit}`}

@@ -138,7 +138,7 @@ function Runs({ marks, stairs, y }: { marks: readonly string[]; stairs: Staircas
       <g key={from}>
         <path className="bracket" d={`M${left} ${y}v4H${right}v-4`} />
         {(fits || (from === to && short)) && (
-          <text className="m center" x={(left + right) / 2} y={y + 17}>
+          <text className="m center" x={(left + right) / 2} y={y + 15}>
             {words}
           </text>
         )}
@@ -168,7 +168,7 @@ function Loupe({
   const width = small ? 58 : 108;
   const height = small ? 54 : 68;
   const x = plan.stack + (small ? 4 : 12);
-  const low = top + 20 + height;
+  const low = top + 24 + height;
   const step = stairs.steps[section - 1];
   const edge = x + width + (small ? 6 : 40);
   const seen = Math.min(step.low, step.high);
@@ -181,7 +181,7 @@ function Loupe({
         <path className="fan" d={`M${edge} ${top}L${target} ${seen}V${foot}L${edge} ${low + 6}z`} />
       )}
       {clear && <path className="bracket" d={`M${edge} ${top}V${low + 6}`} />}
-      <text className="b" x={x} y={top + 11}>
+      <text className="b" x={x} y={top + 8}>
         {small ? `section ${section}` : `section ${section}, drawn large`}
       </text>
       <SectionCircuit
@@ -397,7 +397,7 @@ export const Stack = memo(function Stack({
             {unit} to core, mean
           </text>
         )}
-        {stairs.folded && <Runs marks={marks} stairs={stairs} y={foot + 32} />}
+        {stairs.folded && <Runs marks={marks} stairs={stairs} y={foot + 31} />}
         {!floating &&
           stairs.joints.map(
             ({ x, y }, j) =>

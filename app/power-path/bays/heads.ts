@@ -8,6 +8,9 @@ import {
 } from '../../../sim-core/index.ts';
 import { figureText, readingText } from '../../figure.ts';
 
+/** Sections whose voltages lie within this share of their mean are said to have it each. */
+const EQUAL = 0.02;
+
 /** Parts joined by commas; what is not known yet is left out. */
 const list = (...parts: readonly (string | null)[]) => parts.filter((p) => p !== null).join(', ');
 
@@ -66,9 +69,12 @@ export function headOf(
       const alternating = design.rectifier.kind === 'none';
       const each = joints === null || alternating ? null : (joints[n] - joints[0]) / n;
       const words = n === 1 ? '1 section' : `${n} in series`;
-      if (each === null) return words;
+      if (joints === null || each === null) return words;
       if (brief) return n === 1 ? figureText(each, 'V') : `${n} × ${figureText(each, 'V')}`;
-      return `${words}, ${figureText(each, 'V')}${n === 1 ? '' : ' each'}`;
+      const unequal = joints.some(
+        (potential, k) => k > 0 && Math.abs(potential - joints[k - 1] - each) > EQUAL * each,
+      );
+      return `${words}, ${figureText(each, 'V')}${n === 1 ? '' : unequal ? ' on average' : ' each'}`;
     }
     case 'output':
       return brief
