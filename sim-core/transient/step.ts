@@ -88,7 +88,7 @@ function mix(value: number): number {
 }
 
 /** Copies short arrays faster than `set`, whose call alone costs as much as forty elements. */
-function copy<T extends Float64Array | Int32Array>(from: T, to: T): void {
+function copy(from: Float64Array, to: Float64Array): void {
   for (let i = 0; i < from.length; i++) to[i] = from[i];
 }
 
@@ -100,7 +100,7 @@ export class Stepper {
   readonly network: Network;
   readonly system: System;
   /** The state now; see the head of this file. */
-  readonly state: Float64Array;
+  state: Float64Array;
   /** Node voltages at the end of the last step, by unknown; the last entry is earth. */
   readonly x: Float64Array;
   /** Currents of the characteristics at the end of the last step. */
@@ -174,15 +174,15 @@ export class Stepper {
   private readonly lengths = new Map<number, StepLength>();
   private readonly history: Float64Array;
   private readonly stage1: Float64Array;
-  private readonly stage2: Float64Array;
+  private stage2: Float64Array;
   private readonly xBefore: Float64Array;
   private readonly spare: Float64Array;
   private readonly spareX: Float64Array;
   private readonly spareHeat = new Float64Array(PARTS.length);
   private readonly spareCurrent: Float64Array;
-  private readonly slope0: Float64Array;
+  private slope0: Float64Array;
   private readonly slope1: Float64Array;
-  private readonly slope2: Float64Array;
+  private slope2: Float64Array;
   private slopeKnown = false;
   private readonly sources: Float64Array;
   private readonly trial: Float64Array;
@@ -382,7 +382,8 @@ export class Stepper {
     const { nS, state, history, stage1, stage2, slope0, slope1, slope2, scale } = this;
     const { a, h } = step;
     this.attempted = h;
-    copy(this.piece, this.pieceBefore);
+    const { piece, pieceBefore } = this;
+    for (let d = 0; d < piece.length; d++) pieceBefore[d] = piece[d];
     copy(this.x, this.xBefore);
     const keyA = this.keyA;
     const keyB = this.keyB;
@@ -500,8 +501,12 @@ export class Stepper {
       }
     }
     if (this.changed || !this.slopeKnown) this.addSharpHeat(this.attempted);
-    copy(this.stage2, this.state);
-    copy(this.slope2, this.slope0);
+    // Exchanged rather than copied: this is done in every step.
+    const { state, slope0 } = this;
+    this.state = this.stage2;
+    this.stage2 = state;
+    this.slope0 = this.slope2;
+    this.slope2 = slope0;
     this.slopeKnown = true;
     this.delivered += this.work;
     for (let k = 0; k < this.heat.length; k++) this.dissipated[k] += this.heat[k];
