@@ -54,7 +54,8 @@ export function useFrame(
       ask();
     };
     addEventListener('resize', zoom);
-    ask();
+    // The first at once: the plots get their heights before what lies below them is seen.
+    commit();
     return () => {
       cancelAnimationFrame(frame);
       observer.disconnect();

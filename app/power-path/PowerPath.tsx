@@ -37,10 +37,13 @@ function useSize(): [
   const [size, setSize] = useState({ width: 0, height: 0 });
   const measure = useCallback((element: HTMLElement | null) => {
     if (!element) return undefined;
-    const observer = new ResizeObserver(([entry]) => {
-      const { width, height } = entry.contentRect;
+    const take = (width: number, height: number) =>
       setSize({ width: Math.floor(width), height: Math.floor(height) });
-    });
+    // At once, before anything is painted: else what lies below would jump.
+    take(element.clientWidth, element.clientHeight);
+    const observer = new ResizeObserver(([{ contentRect }]) =>
+      take(contentRect.width, contentRect.height),
+    );
     observer.observe(element);
     return () => observer.disconnect();
   }, []);
@@ -216,7 +219,7 @@ export function PowerPath() {
   const open = useOpenBay((state) => state.bay);
   const plan = useMemo(() => planPath(size.width, sections), [size.width, sections]);
   const { arrangement } = plan;
-  if (size.width === 0) return <section className="path unmeasured" ref={measure} />;
+  if (size.width === 0) return <section className="path" ref={measure} />;
 
   if (arrangement === 'narrow') {
     const limb = limbBeside(RAILS);

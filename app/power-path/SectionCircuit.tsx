@@ -165,7 +165,7 @@ function Ladder({ step, stages, reversed }: { step: Step; stages: number; revers
         />
         <rect className="body" x={left} y={head} width={wide} height={foot - head} />
         <text className="center" x={left + wide / 2} y={(head + foot) / 2 + 4}>
-          {step.width >= 100 ? `${stages} stages` : `×${stages}`}
+          {wide >= 56 ? `${stages} stages` : `×${stages}`}
         </text>
       </>
     );
