@@ -100,7 +100,7 @@ export class Stepper {
   readonly network: Network;
   readonly system: System;
   /** The state now; see the head of this file. */
-  state: Float64Array;
+  readonly state: Float64Array;
   /** Node voltages at the end of the last step, by unknown; the last entry is earth. */
   readonly x: Float64Array;
   /** Currents of the characteristics at the end of the last step. */
@@ -174,7 +174,7 @@ export class Stepper {
   private readonly lengths = new Map<number, StepLength>();
   private readonly history: Float64Array;
   private readonly stage1: Float64Array;
-  private stage2: Float64Array;
+  private readonly stage2: Float64Array;
   private readonly xBefore: Float64Array;
   private readonly spare: Float64Array;
   private readonly spareX: Float64Array;
@@ -501,10 +501,9 @@ export class Stepper {
       }
     }
     if (this.changed || !this.slopeKnown) this.addSharpHeat(this.attempted);
-    // Exchanged rather than copied: this is done in every step.
-    const { state, slope0 } = this;
-    this.state = this.stage2;
-    this.stage2 = state;
+    copy(this.stage2, this.state);
+    // Exchanged rather than copied, being nobody else's.
+    const { slope0 } = this;
     this.slope0 = this.slope2;
     this.slope2 = slope0;
     this.slopeKnown = true;
