@@ -4,6 +4,7 @@ import type { Page } from '@playwright/test';
 import { EXAMPLES } from '../sim-core/index.ts';
 import {
   brokenFigures,
+  driveLine,
   engineGoesOn,
   expect,
   linkOf,
@@ -79,6 +80,9 @@ test('a bad link followed on an open page leaves its design and its run alone', 
 }) => {
   await page.goto(`/${whole}`);
   await expect(nameOfDesign(page)).toHaveValue('Sent');
+  await engineGoesOn(page);
+  // Held, so that so many notes do not wait for as many drawings.
+  await driveLine(page).getByRole('button', { name: 'Hold' }).click();
   for (const [what, hash, words] of BAD) {
     await test.step(what, async () => {
       await turnTo(page, hash);
@@ -89,6 +93,7 @@ test('a bad link followed on an open page leaves its design and its run alone', 
     });
   }
   await expect(problem(page)).toBeHidden();
+  await driveLine(page).getByRole('button', { name: 'Run', exact: true }).click();
   await engineGoesOn(page);
   expect(await page.evaluate(() => 'polluted' in {})).toBe(false);
   expect(await brokenFigures(page)).toEqual([]);
