@@ -307,41 +307,44 @@ function WindowTable({ section }: { section: number }) {
   }, []);
   if (!detail) return null;
   return (
-    <table className="visually-hidden">
-      <caption>Signals over the window shown in the lanes</caption>
-      <thead>
-        <tr>
-          <th scope="col">Signal</th>
-          <th scope="col">Least</th>
-          <th scope="col">Mean</th>
-          <th scope="col">Greatest</th>
-        </tr>
-      </thead>
-      <tbody>
-        {LANES.flatMap((lane) => lane.traces).map((trace) => {
-          const samples = samplesOf(detail, trace, section);
-          if (samples === null) return null;
-          let least = Infinity;
-          let greatest = -Infinity;
-          for (const value of samples) {
-            least = Math.min(least, value);
-            greatest = Math.max(greatest, value);
-          }
-          const name = nameOf(trace, section);
-          return (
-            <tr key={name}>
-              <th scope="row">{name}</th>
-              <td>{figureText(least, trace.unit, 4)}</td>
-              <td>
-                {trace.meanRemoved
-                  ? 'removed'
-                  : figureText(meanOver(detail.time, samples), trace.unit, 4)}
-              </td>
-              <td>{figureText(greatest, trace.unit, 4)}</td>
-            </tr>
-          );
-        })}
-      </tbody>
-    </table>
+    // A table is never narrower than its words, so it is hidden inside something that is.
+    <div className="visually-hidden">
+      <table>
+        <caption>Signals over the window shown in the lanes</caption>
+        <thead>
+          <tr>
+            <th scope="col">Signal</th>
+            <th scope="col">Least</th>
+            <th scope="col">Mean</th>
+            <th scope="col">Greatest</th>
+          </tr>
+        </thead>
+        <tbody>
+          {LANES.flatMap((lane) => lane.traces).map((trace) => {
+            const samples = samplesOf(detail, trace, section);
+            if (samples === null) return null;
+            let least = Infinity;
+            let greatest = -Infinity;
+            for (const value of samples) {
+              least = Math.min(least, value);
+              greatest = Math.max(greatest, value);
+            }
+            const name = nameOf(trace, section);
+            return (
+              <tr key={name}>
+                <th scope="row">{name}</th>
+                <td>{figureText(least, trace.unit, 4)}</td>
+                <td>
+                  {trace.meanRemoved
+                    ? 'removed'
+                    : figureText(meanOver(detail.time, samples), trace.unit, 4)}
+                </td>
+                <td>{figureText(greatest, trace.unit, 4)}</td>
+              </tr>
+            );
+          })}
+        </tbody>
+      </table>
+    </div>
   );
 }

@@ -7,6 +7,7 @@ import {
   type Design,
   fieldOf,
   formatQuantity,
+  GROUPS,
   type GroupName,
   placesThatDiffer,
 } from '../../sim-core/index.ts';
@@ -16,22 +17,31 @@ import type { Chunk } from './messages.ts';
 import { useRun } from './store.ts';
 import type { Solver } from './worker.ts';
 
-/** What the worker still has to do, the latest wish of each kind only. */
+/** What the worker still has to be told, the latest wish of each kind only. */
 interface Wishes {
   open: Design | null;
   change: Design | null;
   watch: readonly string[] | null;
 }
 
+/** The lanes are drawn no more often than this, ms: a person sees no more, and drawing costs. */
+const DRAW_EVERY = 40;
+/** Figures change no more often than this, ms: faster ones cannot be read. */
+const WRITE_EVERY = 150;
+
 let solver: Remote<Solver> | null = null;
 const wishes: Wishes = { open: null, change: null, watch: null };
 let held = false;
-/** Whether the loop of pulls is under way. */
+/** Whether wishes are being told, and whether the loop of pulls is under way. */
+let telling = false;
 let pulling = false;
 /** Whether there is anything to compute: not settled, not failed. */
 let awake = true;
 /** Time of the run at the last change, seconds. */
 let changedAt = 0;
+/** When the lanes and the figures were last brought up to date, ms. */
+let drawnAt = 0;
+let writtenAt = 0;
 
 const watched = (section: number): readonly string[] => [
   'bridge voltage',
@@ -47,8 +57,8 @@ function describeChange(before: Design, after: Design): string {
   const places = placesThatDiffer(before, after);
   if (places.length !== 1) return `${places.length} values changed`;
   const [group, name] = places[0].split('.') as [GroupName, string];
-  const field = fieldOf(group, name);
-  if (!field) return 'sections changed';
+  const field = Object.hasOwn(GROUPS, group) ? fieldOf(group, name) : undefined;
+  if (!field) return 'a section changed';
   const print = (design: Design): string => {
     const value = (design[group] as Readonly<Record<string, unknown>>)[name];
     if (typeof value === 'number') {
@@ -69,9 +79,16 @@ function plantDiffers(before: Design, after: Design): boolean {
 }
 
 function takeChunk(chunk: Chunk): void {
+  const now = performance.now();
+  const last = chunk.status !== 'running';
+  awake = !last;
   appendHistory(chunk.history);
-  if (chunk.detail) setDetail(chunk.detail);
-  awake = chunk.status === 'running';
+  if (chunk.detail && (last || now - drawnAt >= DRAW_EVERY)) {
+    drawnAt = now;
+    setDetail(chunk.detail);
+  }
+  if (!last && now - writtenAt < WRITE_EVERY) return;
+  writtenAt = now;
   const { settledAfter } = useRun.getState();
   useRun.setState({
     // Held while this slice was still being computed.
@@ -85,21 +102,28 @@ function takeChunk(chunk: Chunk): void {
   });
 }
 
-/** Do what is wished, then pull; until there is nothing left to do. */
-async function pull(): Promise<void> {
-  if (pulling || !solver) return;
-  pulling = true;
+/**
+ * Tell the worker what is wished, at once and not after the slice it is computing: it takes
+ * messages in their order, so that the next slice is already the new design's.
+ */
+async function tell(): Promise<void> {
+  if (telling || !solver) return;
+  telling = true;
   try {
     for (;;) {
       const { open, change, watch } = wishes;
       wishes.open = wishes.change = wishes.watch = null;
+      if (!open && !change && !watch) break;
+      // The lanes may show another signal: compute on, if only for two periods.
       if (watch) await solver.watch(watch);
+      awake = true;
       if (open || change) {
         const opened = await (open ? solver.open(change ?? open) : solver.change(change as Design));
+        // The first samples of the new design are drawn as soon as they are there.
+        drawnAt = writtenAt = 0;
         if (opened.ok) {
           if (open) clearColumns();
           changedAt = open ? 0 : useRun.getState().time;
-          awake = true;
           useRun.setState({
             problem: null,
             signals: opened.signals,
@@ -112,16 +136,24 @@ async function pull(): Promise<void> {
           awake = false;
           useRun.setState({ state: 'failed', problem: opened.problem });
         }
-      } else if (watch) {
-        // The lanes show another signal: compute on, if only for two periods.
-        awake = true;
       }
-      if (wishes.open || wishes.change || wishes.watch) continue;
-      if (held || !awake) break;
+    }
+  } finally {
+    telling = false;
+  }
+  void pull();
+}
+
+/** Pull slices until the run is held, settled or failed. */
+async function pull(): Promise<void> {
+  if (pulling || !solver) return;
+  pulling = true;
+  try {
+    while (!held && awake) {
       const chunk = await solver.next();
       if (!chunk) break;
-      // A design that is waiting makes the old one's samples stale.
-      if (!wishes.open) takeChunk(chunk);
+      // Samples from before a change that the worker has not answered yet are stale.
+      if (!telling) takeChunk(chunk);
     }
   } finally {
     pulling = false;
@@ -152,14 +184,14 @@ export function openSession(): void {
       markHistory(describeChange(before.design, design));
       wishes.change = design;
     }
-    void pull();
+    void tell();
   });
   useRun.subscribe(({ section }, before) => {
     if (section === before.section) return;
     wishes.watch = watched(section);
-    void pull();
+    void tell();
   });
-  void pull();
+  void tell();
 }
 
 /** Stop the clock of the run; values can still be changed. */
@@ -180,7 +212,7 @@ export function restart(): void {
   held = false;
   wishes.open = useDocument.getState().design;
   wishes.change = null;
-  void pull();
+  void tell();
 }
 
 /** Show another section's winding in the lanes, counted from 1. */
