@@ -299,9 +299,8 @@ export class Run {
     const always = {
       energyAudit: audit === null ? null : audit * 100,
       settledDistance:
-        settling.distance === null || !Number.isFinite(settling.distance)
-          ? null
-          : settling.distance * 100,
+        // Beyond its own size an estimate says no more than that the run is far from settled.
+        settling.distance === null || settling.distance > 1 ? null : settling.distance * 100,
       stackEnergy: this.transient.stepper.chargedEnergy(['rectifier', 'output']),
     };
     if (meter.periods === 0) return { ...(this.earlier ?? NO_READINGS), ...always };
@@ -317,17 +316,20 @@ export class Run {
       return value === null ? null : value * 100;
     };
     const ripple = meter.max[output] - meter.min[output];
+    const direct = meter.min[output] * meter.max[output] > 0;
     const supplyPower = this.deliveredLast / period;
     const loadPower = power('load');
     return {
       ...always,
       outputVoltage: meter.mean[output],
       outputPeak: size(output),
+      outputRms: Math.sqrt(meter.meanSquare[output]),
       outputCurrent: meter.mean[METER['load current']],
       ripplePeakToPeak: ripple,
       rippleAmplitude: ripple / 2,
-      rippleFactor: percent(ripple / 2, Math.abs(meter.mean[output])),
-      percentageRipple: percent(ripple, size(output)),
+      // Of an alternating output there is no ripple to speak of.
+      rippleFactor: direct ? percent(ripple / 2, Math.abs(meter.mean[output])) : null,
+      percentageRipple: direct ? percent(ripple, size(output)) : null,
       primaryPeak: size(primary),
       primaryRms: Math.sqrt(meter.meanSquare[primary]),
       primaryMean: meter.mean[primary],
@@ -344,7 +346,7 @@ export class Run {
       bridgeLoss: power('supply') + power('bridge'),
       tankLoss: power('tank'),
       transformerLoss: power('transformer'),
-      rectifierLoss: power('rectifier') + power('earthing'),
+      rectifierLoss: power('rectifier'),
       outputLoss: power('output'),
     };
   }
@@ -385,6 +387,7 @@ export class Run {
 const NO_READINGS = {
   outputVoltage: null,
   outputPeak: null,
+  outputRms: null,
   outputCurrent: null,
   ripplePeakToPeak: null,
   rippleAmplitude: null,

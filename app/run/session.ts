@@ -34,6 +34,8 @@ const wishes: Wishes = { open: null, change: null, watch: null };
 let held = false;
 /** Whether wishes are being told, and whether the loop of pulls is under way. */
 let telling = false;
+/** Whether the worker has yet to answer the wish for a new run. */
+let opening = false;
 let pulling = false;
 /** Whether there is anything to compute: not settled, not failed. */
 let awake = true;
@@ -118,7 +120,9 @@ async function tell(): Promise<void> {
       if (watch) await solver.watch(watch);
       awake = true;
       if (open || change) {
+        opening = open !== null;
         const opened = await (open ? solver.open(change ?? open) : solver.change(change as Design));
+        opening = false;
         // The first samples of the new design are drawn as soon as they are there.
         drawnAt = writtenAt = 0;
         if (opened.ok) {
@@ -137,11 +141,11 @@ async function tell(): Promise<void> {
           useRun.setState({ state: 'failed', problem: opened.problem });
         }
       }
+      void pull();
     }
   } finally {
     telling = false;
   }
-  void pull();
 }
 
 /** Pull slices until the run is held, settled or failed. */
@@ -152,8 +156,8 @@ async function pull(): Promise<void> {
     while (!held && awake) {
       const chunk = await solver.next();
       if (!chunk) break;
-      // Samples from before a change that the worker has not answered yet are stale.
-      if (!telling) takeChunk(chunk);
+      // A new run is on its way: nothing of the old one belongs before it.
+      if (!opening) takeChunk(chunk);
     }
   } finally {
     pulling = false;

@@ -21,7 +21,7 @@ export const DESIGN_VERSION = 1;
 /** Most sections a transformer may have. */
 export const MAX_SECTIONS = 48;
 
-const PARASITIC = 'smaller or larger values are no part of such a supply';
+const PARASITIC = 'a supply of this kind has no use for such a value';
 
 const supply = {
   voltage: quantity({
@@ -69,7 +69,7 @@ const supply = {
     why: PARASITIC,
   }),
   busCapacitorResistance: quantity({
-    label: 'its series resistance',
+    label: 'Bus capacitor, series resistance',
     about: 'Equivalent series resistance of the bus capacitor.',
     unit: 'Ω',
     min: 1e-5,
@@ -219,7 +219,7 @@ const tank = {
     why: PARASITIC,
   }),
   seriesInductorResistance: quantity({
-    label: 'its resistance',
+    label: 'Series inductor, resistance',
     about: 'Series resistance of that inductor at the drive frequency.',
     unit: 'Ω',
     min: 1e-6,
@@ -239,7 +239,7 @@ const tank = {
     why: PARASITIC,
   }),
   seriesCapacitorResistance: quantity({
-    label: 'its series resistance',
+    label: 'Series capacitor, series resistance',
     about: 'Equivalent series resistance of that capacitor.',
     unit: 'Ω',
     min: 1e-6,
@@ -259,7 +259,7 @@ const tank = {
     why: PARASITIC,
   }),
   parallelCapacitorResistance: quantity({
-    label: 'its series resistance',
+    label: 'Parallel capacitor, series resistance',
     about: 'Equivalent series resistance of that capacitor.',
     unit: 'Ω',
     min: 1e-6,
@@ -459,7 +459,7 @@ const rectifier = {
     why: PARASITIC,
   }),
   capacitorResistance: quantity({
-    label: 'its series resistance',
+    label: 'Capacitors, series resistance',
     about: 'Equivalent series resistance of each of these capacitors.',
     unit: 'Ω',
     min: 1e-4,
@@ -475,7 +475,7 @@ const rectifier = {
     min: 0,
     max: 1e3,
     default: 10,
-    why: 'about 1.0 to 1.3 V per kilovolt of rating is usual',
+    why: 'no stick of diodes drops more',
   }),
   diodeResistance: quantity({
     label: 'Diode stick, slope',
@@ -549,7 +549,7 @@ const stack = {
 
 const output = {
   lead: choice({
-    label: 'Series resistors in the lead of',
+    label: 'Series resistors in',
     about: 'The terminal whose lead carries the resistors of the output network.',
     options: [
       { value: 'positive', label: 'the positive terminal' },

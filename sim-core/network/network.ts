@@ -7,15 +7,7 @@
  */
 
 /** Where an element belongs when losses are added up. */
-export type Part =
-  | 'supply'
-  | 'bridge'
-  | 'tank'
-  | 'transformer'
-  | 'rectifier'
-  | 'output'
-  | 'load'
-  | 'earthing';
+export type Part = 'supply' | 'bridge' | 'tank' | 'transformer' | 'rectifier' | 'output' | 'load';
 
 /** i = v / resistance. */
 export interface Resistor {
@@ -82,7 +74,8 @@ export interface Core {
 /**
  * A one-port without memory: current i(v) in straight pieces (x = V, y = A). A switch has two
  * characteristics, [gate off, gate on], and `gate` names its gate signal; others have one.
- * `source` is the voltage (V) of a source inside it, 0 for a passive part: it delivers −source·i.
+ * `source` is the open-circuit voltage (V) of a source, 0 for a passive part. A source delivers
+ * what leaves its terminals and what its resistance, the inverse of its steepest slope, burns.
  */
 export interface Characteristic {
   readonly name: string;

@@ -14,10 +14,10 @@ export const LEG_A = 'leg A';
 export const LEG_B = 'leg B';
 
 const POSITIONS = [
-  { name: 'switch A high', from: POSITIVE_RAIL, to: LEG_A },
-  { name: 'switch A low', from: LEG_A, to: NEGATIVE_RAIL },
-  { name: 'switch B high', from: POSITIVE_RAIL, to: LEG_B },
-  { name: 'switch B low', from: LEG_B, to: NEGATIVE_RAIL },
+  { name: 'leg A upper switch', from: POSITIVE_RAIL, to: LEG_A },
+  { name: 'leg A lower switch', from: LEG_A, to: NEGATIVE_RAIL },
+  { name: 'leg B upper switch', from: POSITIVE_RAIL, to: LEG_B },
+  { name: 'leg B lower switch', from: LEG_B, to: NEGATIVE_RAIL },
 ] as const;
 
 /** Current of a switch position against its voltage, [gate off, gate on]. */

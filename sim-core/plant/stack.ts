@@ -17,7 +17,8 @@ class Section {
   private readonly design: Design;
   private readonly k: number;
   private readonly curve;
-  readonly diodes: string[] = [];
+  readonly diodes: { readonly name: string; readonly anode: string; readonly cathode: string }[] =
+    [];
 
   constructor(network: NetworkBuilder, design: Design, k: number) {
     const { diodeVoltage, diodeResistance, diodeOffResistance } = design.rectifier;
@@ -31,7 +32,7 @@ class Section {
   /** A diode stick with its junction capacitance. */
   diode(anode: string, cathode: string): void {
     const name = `section ${this.k} diode ${this.diodes.length + 1}`;
-    this.diodes.push(name);
+    this.diodes.push({ name, anode, cathode });
     this.network.characteristic(anode, cathode, {
       name,
       part: 'rectifier',
@@ -63,7 +64,7 @@ class Section {
 }
 
 /** Wire the rectifier of section k between the ends of its winding and its joints. */
-function buildRectifier(network: NetworkBuilder, design: Design, k: number): string[] {
+function buildRectifier(network: NetworkBuilder, design: Design, k: number): Section['diodes'] {
   const section = new Section(network, design, k);
   const a = windingStart(k);
   const b = windingEnd(k);
@@ -120,8 +121,8 @@ export function buildStack({ network, signals }: Site, design: Design): void {
       [0, 'negative'],
       [last, 'positive'],
     ] as const) {
-      network.resistor(`stack leakage, ${sign}`, 'earthing', joint(k), EARTH, leakageResistance);
-      network.capacitor(`stack stray, ${sign}`, 'earthing', joint(k), EARTH, strayCapacitance);
+      network.resistor(`stack leakage, ${sign}`, 'output', joint(k), EARTH, leakageResistance);
+      network.capacitor(`stack stray, ${sign}`, 'output', joint(k), EARTH, strayCapacitance);
     }
   }
   for (let k = 1; k <= last; k++) {
@@ -132,13 +133,21 @@ export function buildStack({ network, signals }: Site, design: Design): void {
       bay: 'stack',
       terms: voltageBetween(joint(k), joint(k - 1)),
     });
-    for (const name of diodes) {
-      signals.push({
-        name: `${name} current`,
-        unit: 'A',
-        bay: 'stack',
-        terms: [{ of: 'characteristic', name, weight: 1 }],
-      });
+    for (const { name, anode, cathode } of diodes) {
+      signals.push(
+        {
+          name: `${name} voltage`,
+          unit: 'V',
+          bay: 'stack',
+          terms: voltageBetween(anode, cathode),
+        },
+        {
+          name: `${name} current`,
+          unit: 'A',
+          bay: 'stack',
+          terms: [{ of: 'characteristic', name, weight: 1 }],
+        },
+      );
     }
   }
   for (let k = 0; k <= last; k++) {

@@ -72,20 +72,8 @@ export function buildSupply({ network, signals }: Site, design: Design): void {
     if (earthing === 'negative') network.join(NEGATIVE_RAIL, EARTH);
     else if (earthing === 'positive') network.join(POSITIVE_RAIL, EARTH);
     else {
-      network.resistor(
-        'bus leakage, positive',
-        'earthing',
-        POSITIVE_RAIL,
-        EARTH,
-        leakageResistance,
-      );
-      network.resistor(
-        'bus leakage, negative',
-        'earthing',
-        NEGATIVE_RAIL,
-        EARTH,
-        leakageResistance,
-      );
+      network.resistor('bus leakage, positive', 'supply', POSITIVE_RAIL, EARTH, leakageResistance);
+      network.resistor('bus leakage, negative', 'supply', NEGATIVE_RAIL, EARTH, leakageResistance);
     }
   }
   signals.push(

@@ -23,6 +23,11 @@ export const READINGS = {
     unit: 'V',
     definition: 'Largest magnitude of the output voltage.',
   },
+  outputRms: {
+    label: 'Output voltage, rms',
+    unit: 'V',
+    definition: 'Root mean square of the output voltage; the one to read of an alternating output.',
+  },
   outputCurrent: {
     label: 'Output current, mean',
     unit: 'A',
@@ -81,7 +86,8 @@ export const READINGS = {
   supplyPower: {
     label: 'Supply power',
     unit: 'W',
-    definition: 'Mean power delivered by the supply ahead of its source resistance.',
+    definition:
+      'Mean power leaving the supply’s terminals, with the loss in its source resistance; at its current limit the voltage counted is the one it still gives.',
   },
   loadPower: {
     label: 'Load power',
@@ -101,7 +107,8 @@ export const READINGS = {
   bridgeLoss: {
     label: 'Loss, supply and bridge',
     unit: 'W',
-    definition: 'Mean loss in the source resistance, the bus capacitor and the switches.',
+    definition:
+      'Mean loss in the source resistance, the bus with its capacitor and leakage, and the switches.',
   },
   tankLoss: {
     label: 'Loss, tank',
@@ -121,7 +128,8 @@ export const READINGS = {
   outputLoss: {
     label: 'Loss, output network',
     unit: 'W',
-    definition: 'Mean loss in the resistors, bleeder and probe of the output.',
+    definition:
+      'Mean loss in the resistors, bleeder and probe of the output, and in the leakage of a floating stack.',
   },
   stackEnergy: {
     label: 'Energy left in stack and cable',

@@ -38,7 +38,6 @@ export const PARTS: readonly Part[] = [
   'rectifier',
   'output',
   'load',
-  'earthing',
 ];
 
 /** Rounds of piece changes before the line search takes over, and before the stage is given up. */
@@ -117,6 +116,8 @@ export class Stepper {
   /** Of the last attempted step: did a device change its piece; error over scale. */
   changed = false;
   error = 0;
+  /** Of the last step reconsidered: how far the two methods end apart, over scale. */
+  spread = 0;
   failure: StepFailure | null = null;
 
   private readonly nC: number;
@@ -151,7 +152,9 @@ export class Stepper {
   private readonly dFrom: Int32Array;
   private readonly dTo: Int32Array;
   private readonly dPart: Int32Array;
-  private readonly dSource: Float64Array;
+  /** Devices that are sources, and the resistance of each. */
+  private readonly active: Int32Array;
+  private readonly activeResistance: Float64Array;
   private readonly dCurves: Int32Array[];
   private readonly dGate: Int32Array;
   private readonly pieceLow: Float64Array;
@@ -235,7 +238,6 @@ export class Stepper {
     this.dFrom = int(devices.map((e) => at(e.from)));
     this.dTo = int(devices.map((e) => at(e.to)));
     this.dPart = int(devices.map(part));
-    this.dSource = real(devices.map((e) => ('source' in e ? e.source : 0)));
     this.dGate = int(devices.map((e) => ('gate' in e ? e.gate : -1)));
     const pieces: Piece[] = [];
     this.dCurves = devices.map((e) => {
@@ -254,6 +256,12 @@ export class Stepper {
     this.pieceOffset = real(pieces.map((p) => p.offset));
     this.pieceKeyA = int(pieces.map((_, p) => mix(2 * p)));
     this.pieceKeyB = int(pieces.map((_, p) => mix(2 * p + 1)));
+    this.active = int(characteristics.flatMap((e, k) => (e.source === 0 ? [] : [this.nF + k])));
+    this.activeResistance = real(
+      characteristics.flatMap((e) =>
+        e.source === 0 ? [] : [1 / Math.max(...e.curves.flat().map((p) => p.slope))],
+      ),
+    );
     this.gated = int([...this.dGate.keys()].filter((d) => this.dGate[d] >= 0));
     this.resistive = int([...capacitors.keys()].filter((e) => capacitors[e].resistance > 0));
     this.piece = new Int32Array(devices.length);
@@ -472,6 +480,13 @@ export class Stepper {
     for (let k = 0; k < this.heat.length; k++) this.heat[k] = 0;
     this.work = 0;
     if (!this.stage(this.length(h / GAMMA), time + h, h, this.state, this.stage2)) return false;
+    const { stage2, spare, scale } = this;
+    let spread = 0;
+    for (let i = 0; i < stage2.length; i++) {
+      const apart = Math.abs(stage2[i] - spare[i]);
+      if (apart > spread * scale[i]) spread = apart / scale[i];
+    }
+    this.spread = spread;
     if (this.keyA === keyA && this.keyB === keyB) {
       copy(this.spare, this.stage2);
       copy(this.spareX, this.x);
@@ -486,11 +501,6 @@ export class Stepper {
       this.slope1[i] = this.slope2[i];
     }
     return true;
-  }
-
-  /** Whether the error of the last attempt could be estimated (not right after a gating edge). */
-  get estimated(): boolean {
-    return this.slopeKnown;
   }
 
   /** Take the step just attempted. */
@@ -900,7 +910,7 @@ export class Stepper {
   /** Add this stage's powers × weight to the work and heat of the step. */
   private addPowers(time: number, weight: number, out: Float64Array): void {
     const { x, nC, nL, nF, nR, heat, deviceCurrent, piece, pieceSlope, pieceOffset } = this;
-    const { dFrom, dTo, dPart, dSource } = this;
+    const { dFrom, dTo, dPart, active } = this;
     for (let d = 0; d < nF; d++) {
       const p = piece[d];
       deviceCurrent[d] = pieceSlope[p] * out[nC + nL + d] + pieceOffset[p];
@@ -911,8 +921,14 @@ export class Stepper {
       const p = piece[d];
       const i = pieceSlope[p] * v + pieceOffset[p];
       deviceCurrent[d] = i;
-      heat[dPart[d]] += weight * (v - dSource[d]) * i;
-      work -= dSource[d] * i;
+      heat[dPart[d]] += weight * v * i;
+    }
+    for (let k = 0; k < active.length; k++) {
+      const d = active[k];
+      const i = deviceCurrent[d];
+      const delivered = i * (this.activeResistance[k] * i - (x[dFrom[d]] - x[dTo[d]]));
+      heat[dPart[d]] += weight * delivered;
+      work += delivered;
     }
     this.work += weight * work;
     for (let e = 0; e < nR; e++) {

@@ -38,6 +38,12 @@ const MOST_HALVINGS = 22;
 /** A longer step is tried when its error should stay below this share of the tolerance. */
 const EASY = 0.5;
 
+/**
+ * How many tolerances an event step of the second order and one of the first may end apart: the
+ * difference is mostly the first order's, and an event's error is made once, not piled up.
+ */
+const EVENT_SLACK = 40;
+
 /** Above this share of the tolerance the error is worth a solve to filter. */
 const FILTER = 1;
 
@@ -224,7 +230,9 @@ export class Transient {
     const { from, coarse, h, gates } = this.intervals[k];
     const into = this.firstPhase - from;
     const left = coarse * h - into;
-    if (into > 0 && left > 1e-12 * this.pattern.period) {
+    // What is left must stand out from the rounding of the time, or there is no step to take.
+    const least = Math.max(1e-9 * this.pattern.period, 16 * Number.EPSILON * this.time);
+    if (into > 0 && left > least) {
       // A run taken up inside an interval walks the rest of it as an interval of its own.
       this.enter(k, this.interval(gates, from + into, left, Math.max(1, Math.ceil(left / h))));
       return;
@@ -290,7 +298,13 @@ export class Transient {
         this.refuse(Math.min(finestLevel, level + (error > 12 ? 2 : 1)));
         continue;
       }
-      if (stepper.changed && !stepper.reconsider(step, this.time)) return stepper.failure;
+      if (stepper.changed) {
+        if (!stepper.reconsider(step, this.time)) return stepper.failure;
+        if (stepper.spread > EVENT_SLACK * tolerance && level < finestLevel) {
+          this.refuse(Math.min(finestLevel, level + 2));
+          continue;
+        }
+      }
       stepper.accept();
       this.position += stride;
       this.time = this.start + this.position * interval.unit;

@@ -53,10 +53,46 @@ describe('the distance to the steady state', () => {
   test('is nothing for a state that stands still', () => {
     const { seen } = decaying(0.5, 0, 100);
     expect(seen.length).toBeGreaterThan(10);
-    for (const { estimate, settled } of seen) {
-      expect(estimate).toBe(0);
-      expect(settled).toBe(true);
+    for (const { estimate } of seen) expect(estimate).toBe(0);
+    // One estimate is no estimate: an oscillation stands still at its turning points.
+    expect(seen[0].settled).toBe(false);
+    expect(seen.at(-1)?.settled).toBe(true);
+  });
+
+  /** Share that is left of the way when a state first counts as settled; null if it never does. */
+  function leftWhenSettled(state: (period: number) => number, periods: number): number | null {
+    const settling = new Settling(Float64Array.of(1), Int32Array.of(0), 1);
+    for (let k = 1; k <= periods; k++) {
+      settling.period(Float64Array.of(state(k)), Float64Array.of(1));
+      if (settling.settled) return Math.abs(state(k) - 1);
     }
+    return null;
+  }
+
+  test.each([
+    [2e3, 0.1],
+    [1e4, 0.03],
+    [3e4, 0.003],
+  ])('takes no drift over %d periods for rest', (periods, offset) => {
+    const left = leftWhenSettled((k) => 1 + offset * Math.exp(-k / periods), 40 * periods);
+    expect(left).not.toBeNull();
+    expect(left).toBeLessThanOrEqual(SETTLED_DISTANCE);
+  });
+
+  test.each([8, 37, 100, 333])(
+    'takes no turning point of an oscillation of %d periods for rest',
+    (length) => {
+      const swing = (k: number) =>
+        0.05 * Math.exp(-k / 1000) * Math.cos((2 * Math.PI * k) / length);
+      const left = leftWhenSettled((k) => 1 + swing(k), 40_000);
+      expect(left).not.toBeNull();
+      expect(left).toBeLessThanOrEqual(SETTLED_DISTANCE);
+    },
+  );
+
+  test.each([2, 3, 4, 8])('never settles on a state that repeats every %d periods', (length) => {
+    const swing = (k: number) => 0.05 * Math.cos((2 * Math.PI * k) / length);
+    expect(leftWhenSettled((k) => 1 + swing(k), 10_000)).toBeNull();
   });
 
   test('is that of the worst kind of state, each by its own energy', () => {

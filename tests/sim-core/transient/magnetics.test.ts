@@ -107,7 +107,7 @@ describe('a winding', () => {
       to: EARTH,
     });
     builder.resistor('load', 'load', 'a', 'b', LOAD);
-    builder.resistor('earthing', 'earthing', 'b', EARTH, 1);
+    builder.resistor('earthing', 'output', 'b', EARTH, 1);
     const transient = new Transient(builder.finish(), { ...squareGates(1 / FREQUENCY) });
     const { stepper } = transient;
     const { network, system, x, state } = stepper;

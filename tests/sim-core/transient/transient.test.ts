@@ -143,7 +143,7 @@ describe('gating edges', () => {
     fullBridge(builder, 'a', 'b', 100, 0.1);
     builder.inductor('l', 'tank', 'a', 'c', 50e-6, 1);
     builder.capacitor('c', 'tank', 'c', 'b', 1e-6);
-    builder.resistor('to earth', 'earthing', 'b', EARTH, 1e6);
+    builder.resistor('to earth', 'output', 'b', EARTH, 1e6);
     const transient = new Transient(builder.finish(), pattern);
     const times: number[] = [0];
     runUntil(transient, 20 * period, (time) => times.push(time));
