@@ -14,7 +14,7 @@
  */
 import { numberUnknowns, type Stamps, type System, stamp } from '../network/mna.ts';
 import type { Network, Part, Piece } from '../network/network.ts';
-import { factor, solve } from '../sparse/ldl.ts';
+import { factor } from '../sparse/ldl.ts';
 import { FactorCache } from './factors.ts';
 
 /** γ of the method. */
@@ -54,9 +54,9 @@ const LEAST_PIVOT = 1e-15;
 export interface StepLength {
   readonly h: number;
   readonly a: number;
-  /** Capacitors: companion conductance, and a/C. */
+  /** Capacitors: companion conductance, and the share of a voltage that is the capacitance's. */
   readonly gC: Float64Array;
-  readonly kC: Float64Array;
+  readonly shareC: Float64Array;
   /** Inductors: companion conductance, and the share of the old current. */
   readonly gL: Float64Array;
   readonly wL: Float64Array;
@@ -90,6 +90,60 @@ function mix(value: number): number {
 function copy(from: Float64Array, to: Float64Array): void {
   for (let i = 0; i < from.length; i++) to[i] = from[i];
 }
+
+/**
+ * The working store. A loop over arrays that are constants of the module runs some three times
+ * as fast as one over arrays found in an object's fields, because the compiler then knows where
+ * they lie; and a step is nothing but such loops. The store serves one stepper at a time: a
+ * stepper that is to attempt a step moves in, and the one before moves out. Sizes are far beyond
+ * what any design needs (48 sections of 12-stage ladders: some 2,500 states, 1,200 nodes).
+ */
+const MOST_STATES = 8192;
+const MOST_NODES = 4096;
+const MOST_DEVICES = 4096;
+const MOST_PIECES = 16384;
+const MOST_ENTRIES = 65536;
+const STATE = new Float64Array(MOST_STATES);
+const HISTORY = new Float64Array(MOST_STATES);
+const STAGE1 = new Float64Array(MOST_STATES);
+const STAGE2 = new Float64Array(MOST_STATES);
+const SPARE = new Float64Array(MOST_STATES);
+const SLOPE0 = new Float64Array(MOST_STATES);
+const SLOPE1 = new Float64Array(MOST_STATES);
+const SLOPE2 = new Float64Array(MOST_STATES);
+const SCALE = new Float64Array(MOST_STATES);
+const X = new Float64Array(MOST_NODES);
+const SOURCES = new Float64Array(MOST_NODES);
+const TRIAL = new Float64Array(MOST_NODES);
+const SPARE_X = new Float64Array(MOST_NODES);
+const C_FROM = new Int32Array(MOST_STATES);
+const C_TO = new Int32Array(MOST_STATES);
+const C_G = new Float64Array(MOST_STATES);
+const C_SHARE = new Float64Array(MOST_STATES);
+const L_FROM = new Int32Array(MOST_STATES);
+const L_TO = new Int32Array(MOST_STATES);
+const L_STAR_FROM = new Int32Array(MOST_STATES);
+const L_STAR_TO = new Int32Array(MOST_STATES);
+const L_RATIO = new Float64Array(MOST_STATES);
+const L_G = new Float64Array(MOST_STATES);
+const L_W = new Float64Array(MOST_STATES);
+const D_FROM = new Int32Array(MOST_DEVICES);
+const D_TO = new Int32Array(MOST_DEVICES);
+const D_PART = new Int32Array(MOST_DEVICES);
+const D_PIECE = new Int32Array(MOST_DEVICES);
+const D_CURRENT = new Float64Array(MOST_DEVICES);
+const ROW = new Int32Array(MOST_ENTRIES);
+const COLUMN = new Int32Array(MOST_ENTRIES);
+const DIAGONAL = new Float64Array(MOST_NODES);
+const FACTORS = new Float64Array(MOST_ENTRIES);
+const PIECE_LOW = new Float64Array(MOST_PIECES);
+const PIECE_HIGH = new Float64Array(MOST_PIECES);
+const PIECE_SLOPE = new Float64Array(MOST_PIECES);
+const PIECE_OFFSET = new Float64Array(MOST_PIECES);
+
+/** The stepper that has the working store, and the step length that is loaded there. */
+let resident: Stepper | null = null;
+let loaded: StepLength | null = null;
 
 const int = (values: readonly number[]): Int32Array => Int32Array.from(values);
 const real = (values: readonly number[]): Float64Array => Float64Array.from(values);
@@ -175,26 +229,16 @@ export class Stepper {
 
   private readonly cache: FactorCache;
   private readonly lengths = new Map<number, StepLength>();
-  private readonly history: Float64Array;
-  private readonly stage1: Float64Array;
-  private readonly stage2: Float64Array;
   private readonly xBefore: Float64Array;
-  private readonly spare: Float64Array;
-  private readonly spareX: Float64Array;
   private readonly spareHeat = new Float64Array(PARTS.length);
-  private readonly spareCurrent: Float64Array;
-  private slope0: Float64Array;
-  private readonly slope1: Float64Array;
-  private slope2: Float64Array;
+  /** Slopes at the end of the last step, while another stepper has the working store. */
+  private readonly slope0: Float64Array;
   private slopeKnown = false;
-  private readonly sources: Float64Array;
-  private readonly trial: Float64Array;
   private readonly assembled: Float64Array;
   private readonly heat = new Float64Array(PARTS.length);
   private work = 0;
   /** Length of the step attempted last, seconds. */
   private attempted = 0;
-  private factors: Float64Array;
   private factorsFor: StepLength | null = null;
   private factorsA = 0;
   private factorsB = 0;
@@ -270,24 +314,22 @@ export class Stepper {
 
     const n = system.pattern.n;
     const size = n + system.pattern.nnz;
+    if (
+      this.nS > MOST_STATES ||
+      n >= MOST_NODES ||
+      system.pattern.nnz > MOST_ENTRIES ||
+      devices.length > MOST_DEVICES ||
+      pieces.length > MOST_PIECES
+    ) {
+      throw new RangeError('the network is larger than any design can make it');
+    }
     this.x = new Float64Array(n + 1);
     this.xBefore = new Float64Array(n + 1);
-    this.spare = new Float64Array(this.nS);
-    this.spareX = new Float64Array(n + 1);
-    this.spareCurrent = new Float64Array(devices.length);
-    this.sources = new Float64Array(n + 1);
-    this.trial = new Float64Array(n + 1);
     this.assembled = new Float64Array(size);
     this.cache = new FactorCache(size);
-    this.factors = new Float64Array(size);
     this.state = new Float64Array(this.nS);
     this.scale = new Float64Array(this.nS).fill(1);
-    this.history = new Float64Array(this.nS);
-    this.stage1 = new Float64Array(this.nS);
-    this.stage2 = new Float64Array(this.nS);
     this.slope0 = new Float64Array(this.nS);
-    this.slope1 = new Float64Array(this.nS);
-    this.slope2 = new Float64Array(this.nS);
     this.deviceCurrent = new Float64Array(devices.length);
 
     this.state.set(capacitors.map((e) => e.voltage));
@@ -332,6 +374,7 @@ export class Stepper {
     this.keyA ^= this.pieceKeyA[old] ^ this.pieceKeyA[p];
     this.keyB ^= this.pieceKeyB[old] ^ this.pieceKeyB[p];
     this.piece[d] = p;
+    if (resident === this) D_PIECE[d] = p;
   }
 
   /**
@@ -354,10 +397,11 @@ export class Stepper {
     if (known) return known;
     const a = GAMMA * h;
     const gC = new Float64Array(this.nC);
-    const kC = new Float64Array(this.nC);
+    const shareC = new Float64Array(this.nC);
     for (let e = 0; e < this.nC; e++) {
-      kC[e] = a / this.cValue[e];
-      gC[e] = 1 / (kC[e] + this.cResistance[e]);
+      const reactance = a / this.cValue[e];
+      gC[e] = 1 / (reactance + this.cResistance[e]);
+      shareC[e] = this.cResistance[e] === 0 ? 1 : reactance * gC[e];
     }
     const gL = new Float64Array(this.nL);
     const wL = new Float64Array(this.nL);
@@ -374,7 +418,7 @@ export class Stepper {
     const serial = this.lengths.size + 1;
     const keyA = mix(-2 * serial);
     const keyB = mix(-2 * serial - 1);
-    const made: StepLength = { h, a, gC, kC, gL, wL, base, keyA, keyB };
+    const made: StepLength = { h, a, gC, shareC, gL, wL, base, keyA, keyB };
     this.lengths.set(h, made);
     return made;
   }
@@ -387,8 +431,13 @@ export class Stepper {
    * @returns false if a stage could not be solved; `failure` then says why
    */
   attempt(step: StepLength, time: number): boolean {
-    const { nS, state, history, stage1, stage2, slope0, slope1, slope2, scale } = this;
+    const { nS, state, scale } = this;
     const { a, h } = step;
+    if (resident !== this) this.moveIn();
+    for (let i = 0; i < nS; i++) {
+      STATE[i] = state[i];
+      SCALE[i] = scale[i];
+    }
     this.attempted = h;
     const { piece, pieceBefore } = this;
     for (let d = 0; d < piece.length; d++) pieceBefore[d] = piece[d];
@@ -399,32 +448,86 @@ export class Stepper {
     this.work = 0;
     this.failure = null;
 
-    if (!this.stage(step, time + GAMMA * h, (1 - GAMMA) * h, state, stage1)) return false;
+    for (let i = 0; i < nS; i++) HISTORY[i] = STATE[i];
+    if (!this.stage(step, time + GAMMA * h, (1 - GAMMA) * h)) return this.fail();
     this.changed = this.keyA !== keyA || this.keyB !== keyB;
-    for (let i = 0; i < nS; i++) history[i] = state[i] + KAPPA * (stage1[i] - state[i]);
-    if (!this.stage(step, time + h, a, history, stage2)) return false;
+    for (let i = 0; i < nS; i++) {
+      const reached = STAGE2[i];
+      STAGE1[i] = reached;
+      HISTORY[i] = STATE[i] + KAPPA * (reached - STATE[i]);
+    }
+    if (!this.stage(step, time + h, a)) return this.fail();
     this.changed ||= this.keyA !== keyA || this.keyB !== keyB;
 
     const inverse = 1 / a;
     let worst = 0;
     let sum = 0;
     for (let i = 0; i < nS; i++) {
-      const f1 = (stage1[i] - state[i]) * inverse;
-      const f2 = (stage2[i] - history[i]) * inverse;
-      slope1[i] = f1;
-      slope2[i] = f2;
-      const error = Math.abs(f1 - GAMMA * f2 - (1 - GAMMA) * slope0[i]);
-      if (error > worst * scale[i]) worst = error / scale[i];
-      sum += stage2[i];
+      const f1 = (STAGE1[i] - STATE[i]) * inverse;
+      const f2 = (STAGE2[i] - HISTORY[i]) * inverse;
+      SLOPE1[i] = f1;
+      SLOPE2[i] = f2;
+      const error = Math.abs(f1 - GAMMA * f2 - (1 - GAMMA) * SLOPE0[i]);
+      if (error > worst * SCALE[i]) worst = error / SCALE[i];
+      sum += STAGE2[i];
     }
+    this.showEnd();
     this.error = this.slopeKnown ? Math.abs(ESTIMATE) * h * worst : 0;
     // A sum is finite only if all its terms are.
     if (!(sum - sum === 0)) {
-      const bad = stage2.findIndex((value) => !Number.isFinite(value));
+      const bad = STAGE2.findIndex((value) => !Number.isFinite(value));
       this.failure = { kind: 'not-finite', name: this.nameOfState(bad) };
       return false;
     }
     return true;
+  }
+
+  /** Take the working store from whoever has it. */
+  private moveIn(): void {
+    if (resident) resident.slope0.set(SLOPE0.subarray(0, resident.nS));
+    resident = this;
+    loaded = null;
+    SLOPE0.set(this.slope0);
+    C_FROM.set(this.cFrom);
+    C_TO.set(this.cTo);
+    L_FROM.set(this.lFrom);
+    L_TO.set(this.lTo);
+    L_STAR_FROM.set(this.lStarFrom);
+    L_STAR_TO.set(this.lStarTo);
+    L_RATIO.set(this.lRatio);
+    D_FROM.set(this.dFrom);
+    D_TO.set(this.dTo);
+    D_PART.set(this.dPart);
+    D_PIECE.set(this.piece);
+    const { n, start, row } = this.system.pattern;
+    ROW.set(row);
+    for (let j = 0; j < n; j++) COLUMN.fill(j, start[j], start[j + 1]);
+    this.factorsFor = null;
+    PIECE_LOW.set(this.pieceLow);
+    PIECE_HIGH.set(this.pieceHigh);
+    PIECE_SLOPE.set(this.pieceSlope);
+    PIECE_OFFSET.set(this.pieceOffset);
+  }
+
+  /** Bring the tables of a step length into the working store. */
+  private load(step: StepLength): void {
+    loaded = step;
+    C_G.set(step.gC);
+    C_SHARE.set(step.shareC);
+    L_G.set(step.gL);
+    L_W.set(step.wL);
+  }
+
+  /** Show node voltages and device currents to those who read them. */
+  private showEnd(): void {
+    const { x, deviceCurrent } = this;
+    for (let i = 0; i < x.length; i++) x[i] = X[i];
+    for (let d = 0; d < deviceCurrent.length; d++) deviceCurrent[d] = D_CURRENT[d];
+  }
+
+  private fail(): false {
+    this.showEnd();
+    return false;
   }
 
   /**
@@ -435,27 +538,32 @@ export class Stepper {
    * @returns the filtered error over scale
    */
   filteredError(step: StepLength): number {
-    const { nS, nC, nL, nF, slope0, slope1, slope2, scale, history, trial, spare } = this;
+    const { nS, nC, nL, nF } = this;
+    const { n } = this.system.pattern;
     const factor = ESTIMATE * step.h;
     for (let i = 0; i < nS; i++) {
-      history[i] = factor * (slope1[i] - GAMMA * slope2[i] - (1 - GAMMA) * slope0[i]);
+      SPARE[i] = HISTORY[i];
+      HISTORY[i] = factor * (SLOPE1[i] - GAMMA * SLOPE2[i] - (1 - GAMMA) * SLOPE0[i]);
+      STAGE1[i] = STAGE2[i];
     }
-    this.collectSources(step, history);
-    copy(this.sources, trial);
+    for (let i = 0; i <= n; i++) SPARE_X[i] = X[i];
+    this.collectSources(step);
     for (let d = 0; d < nF; d++) {
-      const s = this.pieceSlope[this.piece[d]] * history[nC + nL + d];
-      trial[this.dFrom[d]] -= s;
-      trial[this.dTo[d]] += s;
+      const s = PIECE_SLOPE[D_PIECE[d]] * HISTORY[nC + nL + d];
+      SOURCES[D_FROM[d]] -= s;
+      SOURCES[D_TO[d]] += s;
     }
-    solve(this.system.pattern, this.factors, trial);
-    trial[trial.length - 1] = 0;
-    this.solves++;
-    this.takeStates(step, history, trial, spare);
+    for (let i = 0; i <= n; i++) X[i] = SOURCES[i];
+    this.solve();
+    this.takeStates(step);
     let worst = 0;
     for (let i = 0; i < nS; i++) {
-      const error = Math.abs(spare[i]);
-      if (error > worst * scale[i]) worst = error / scale[i];
+      const error = Math.abs(STAGE2[i]);
+      if (error > worst * SCALE[i]) worst = error / SCALE[i];
+      STAGE2[i] = STAGE1[i];
+      HISTORY[i] = SPARE[i];
     }
+    for (let i = 0; i <= n; i++) X[i] = SPARE_X[i];
     return worst;
   }
 
@@ -470,36 +578,40 @@ export class Stepper {
    */
   reconsider(step: StepLength, time: number): boolean {
     const { h } = step;
+    const { nS } = this;
+    const { n } = this.system.pattern;
     const keyA = this.keyA;
     const keyB = this.keyB;
-    copy(this.stage2, this.spare);
-    copy(this.x, this.spareX);
+    for (let i = 0; i < nS; i++) {
+      SPARE[i] = STAGE2[i];
+      HISTORY[i] = STATE[i];
+    }
+    for (let i = 0; i <= n; i++) SPARE_X[i] = X[i];
     const { work } = this;
     copy(this.heat, this.spareHeat);
-    copy(this.deviceCurrent, this.spareCurrent);
     for (let k = 0; k < this.heat.length; k++) this.heat[k] = 0;
     this.work = 0;
-    if (!this.stage(this.length(h / GAMMA), time + h, h, this.state, this.stage2)) return false;
-    const { stage2, spare, scale } = this;
+    if (!this.stage(this.length(h / GAMMA), time + h, h)) return this.fail();
     let spread = 0;
-    for (let i = 0; i < stage2.length; i++) {
-      const apart = Math.abs(stage2[i] - spare[i]);
-      if (apart > spread * scale[i]) spread = apart / scale[i];
+    for (let i = 0; i < nS; i++) {
+      const apart = Math.abs(STAGE2[i] - SPARE[i]);
+      if (apart > spread * SCALE[i]) spread = apart / SCALE[i];
     }
     this.spread = spread;
     if (this.keyA === keyA && this.keyB === keyB) {
-      copy(this.spare, this.stage2);
-      copy(this.spareX, this.x);
+      // Device currents in the store are the Euler stage's; those shown are still the step's.
+      for (let i = 0; i < nS; i++) STAGE2[i] = SPARE[i];
+      for (let i = 0; i <= n; i++) X[i] = SPARE_X[i];
       copy(this.spareHeat, this.heat);
-      copy(this.spareCurrent, this.deviceCurrent);
       this.work = work;
       return true;
     }
-    copy(this.stage2, this.stage1);
-    for (let i = 0; i < this.nS; i++) {
-      this.slope2[i] = (this.stage2[i] - this.state[i]) / h;
-      this.slope1[i] = this.slope2[i];
+    for (let i = 0; i < nS; i++) {
+      STAGE1[i] = STAGE2[i];
+      SLOPE2[i] = (STAGE2[i] - STATE[i]) / h;
+      SLOPE1[i] = SLOPE2[i];
     }
+    this.showEnd();
     return true;
   }
 
@@ -511,11 +623,11 @@ export class Stepper {
       }
     }
     if (this.changed || !this.slopeKnown) this.addSharpHeat(this.attempted);
-    copy(this.stage2, this.state);
-    // Exchanged rather than copied, being nobody else's.
-    const { slope0 } = this;
-    this.slope0 = this.slope2;
-    this.slope2 = slope0;
+    const { state, nS } = this;
+    for (let i = 0; i < nS; i++) {
+      state[i] = STAGE2[i];
+      SLOPE0[i] = SLOPE2[i];
+    }
     this.slopeKnown = true;
     this.delivered += this.work;
     for (let k = 0; k < this.heat.length; k++) this.dissipated[k] += this.heat[k];
@@ -529,20 +641,20 @@ export class Stepper {
    * element, what the stages' powers say went in less what it holds more is that heat.
    */
   private addSharpHeat(h: number): void {
-    const { nC, nL, nS, state, stage1, stage2, slope1, slope2, heat } = this;
+    const { nC, nL, nS, heat } = this;
     for (let i = 0; i < nC + nL; i++) {
       const weight = i < nC ? this.cValue[i] : this.lValue[i - nC];
-      const into = h * ((1 - GAMMA) * stage1[i] * slope1[i] + GAMMA * stage2[i] * slope2[i]);
-      const held = 0.5 * (stage2[i] - state[i]) * (stage2[i] + state[i]);
+      const into = h * ((1 - GAMMA) * STAGE1[i] * SLOPE1[i] + GAMMA * STAGE2[i] * SLOPE2[i]);
+      const held = 0.5 * (STAGE2[i] - STATE[i]) * (STAGE2[i] + STATE[i]);
       heat[i < nC ? this.cPart[i] : this.lPart[i - nC]] += weight * (into - held);
     }
     for (let i = nC + nL; i < nS; i++) {
       const d = i - nC - nL;
       const into =
         h *
-        ((1 - GAMMA) * this.coreCurrent(d, stage1[i]) * slope1[i] +
-          GAMMA * this.coreCurrent(d, stage2[i]) * slope2[i]);
-      const held = this.coreEnergy(d, stage2[i]) - this.coreEnergy(d, state[i]);
+        ((1 - GAMMA) * this.coreCurrent(d, STAGE1[i]) * SLOPE1[i] +
+          GAMMA * this.coreCurrent(d, STAGE2[i]) * SLOPE2[i]);
+      const held = this.coreEnergy(d, STAGE2[i]) - this.coreEnergy(d, STATE[i]);
       heat[this.dPart[d]] += into - held;
     }
   }
@@ -579,7 +691,7 @@ export class Stepper {
       const from = this.dFrom[d];
       const to = this.dTo[d];
       const before = d < nF ? this.state[fluxes + d] : xBefore[from] - xBefore[to];
-      const after = d < nF ? this.stage2[fluxes + d] : x[from] - x[to];
+      const after = d < nF ? STAGE2[fluxes + d] : x[from] - x[to];
       const corner = after > before ? pieceHigh[p] : pieceLow[p];
       const share = (corner - before) / (after - before);
       // A device that came back within the step, or jumped at its start, says nothing: start.
@@ -638,52 +750,45 @@ export class Stepper {
   }
 
   /**
-   * Solve one stage: X = history + a·f(X).
+   * Solve one stage: from HISTORY to STAGE2 = HISTORY + a·f(STAGE2).
    * @param weight  seconds for which this stage's powers count
-   * @param out     receives X
    */
-  private stage(
-    step: StepLength,
-    time: number,
-    weight: number,
-    history: Float64Array,
-    out: Float64Array,
-  ): boolean {
-    this.collectSources(step, history);
+  private stage(step: StepLength, time: number, weight: number): boolean {
+    this.collectSources(step);
     this.addEmfs(time);
-    if (!this.findPieces(step, history)) return false;
-    this.takeStates(step, history, this.x, out);
-    this.addPowers(time, weight, out);
+    if (!this.findPieces(step)) return false;
+    this.takeStates(step);
+    this.addPowers(time, weight);
     return true;
   }
 
   /** Right-hand side of what the storing elements remember. */
-  private collectSources(step: StepLength, history: Float64Array): void {
-    const { sources, nC, nL, cFrom, cTo, lFrom, lTo, lStarFrom, lStarTo, lRatio } = this;
-    const { gC, wL } = step;
-    for (let i = 0; i < sources.length; i++) sources[i] = 0;
+  private collectSources(step: StepLength): void {
+    if (loaded !== step) this.load(step);
+    const { nC, nL } = this;
+    const { n } = this.system.pattern;
+    for (let i = 0; i <= n; i++) SOURCES[i] = 0;
     for (let e = 0; e < nC; e++) {
-      const s = gC[e] * history[e];
-      sources[cFrom[e]] += s;
-      sources[cTo[e]] -= s;
+      const s = C_G[e] * HISTORY[e];
+      SOURCES[C_FROM[e]] += s;
+      SOURCES[C_TO[e]] -= s;
     }
     for (let e = 0; e < nL; e++) {
-      const s = wL[e] * history[nC + e];
-      sources[lFrom[e]] -= s;
-      sources[lTo[e]] += s;
-      const reflected = lRatio[e] * s;
-      sources[lStarFrom[e]] -= reflected;
-      sources[lStarTo[e]] += reflected;
+      const s = L_W[e] * HISTORY[nC + e];
+      SOURCES[L_FROM[e]] -= s;
+      SOURCES[L_TO[e]] += s;
+      const reflected = L_RATIO[e] * s;
+      SOURCES[L_STAR_FROM[e]] -= reflected;
+      SOURCES[L_STAR_TO[e]] += reflected;
     }
   }
 
   /** Right-hand side of the sine sources. */
   private addEmfs(time: number): void {
-    const { sources } = this;
     for (let e = 0; e < this.sFrom.length; e++) {
       const s = this.sConductance[e] * this.emf(e, time);
-      sources[this.sFrom[e]] += s;
-      sources[this.sTo[e]] -= s;
+      SOURCES[this.sFrom[e]] += s;
+      SOURCES[this.sTo[e]] -= s;
     }
   }
 
@@ -692,36 +797,36 @@ export class Stepper {
     return amplitude * Math.sin(2 * Math.PI * frequency * time + phase);
   }
 
-  /** Solve for x, changing devices' pieces until all hold. */
-  private findPieces(step: StepLength, history: Float64Array): boolean {
-    const { x, trial, nF } = this;
+  /** Solve for X, changing devices' pieces until all hold. */
+  private findPieces(step: StepLength): boolean {
+    const { nF } = this;
+    const { a } = step;
+    const { n } = this.system.pattern;
     const fluxes = this.nC + this.nL;
     const devices = this.piece.length;
     for (let round = 0; round < MOST_ROUNDS; round++) {
-      if (round >= FREE_ROUNDS) copy(x, trial);
-      if (!this.solveNow(step, history)) return false;
+      if (round >= FREE_ROUNDS) for (let i = 0; i <= n; i++) TRIAL[i] = X[i];
+      if (!this.solveNow(step)) return false;
       // Pieces may cycle; the exact minimum along the line cannot. Where it no longer moves,
       // what is left to decide is rounding at corners, where either piece is right.
-      if (round >= FREE_ROUNDS && this.searchLine(step, history) < STALL) return true;
-      let moved = false;
-      let last = 0;
+      if (round >= FREE_ROUNDS && this.searchLine(step) < STALL) return true;
+      let last = -1;
       for (let d = 0; d < devices; d++) {
-        const from = x[this.dFrom[d]];
-        const to = x[this.dTo[d]];
-        const at = d < nF ? history[fluxes + d] + step.a * (from - to) : from - to;
-        let p = this.piece[d];
-        if (at <= this.pieceHigh[p] && at >= this.pieceLow[p]) continue;
+        const from = X[D_FROM[d]];
+        const to = X[D_TO[d]];
+        const at = d < nF ? HISTORY[fluxes + d] + a * (from - to) : from - to;
+        let p = D_PIECE[d];
+        if (at <= PIECE_HIGH[p] && at >= PIECE_LOW[p]) continue;
         // Pieces join continuously: within rounding of a corner either of them is right.
         const slack = 1e-11 * (d < nF ? Math.abs(at) : Math.abs(from) + Math.abs(to));
-        if (at <= this.pieceHigh[p] + slack && at >= this.pieceLow[p] - slack) continue;
-        while (at > this.pieceHigh[p]) p++;
-        while (at < this.pieceLow[p]) p--;
+        if (at <= PIECE_HIGH[p] + slack && at >= PIECE_LOW[p] - slack) continue;
+        while (at > PIECE_HIGH[p]) p++;
+        while (at < PIECE_LOW[p]) p--;
         if (!(at - at === 0)) break;
         this.move(d, p);
-        moved = true;
         last = d;
       }
-      if (!moved) return true;
+      if (last < 0) return true;
       if (round === MOST_ROUNDS - 1) {
         const { cores, characteristics } = this.network;
         const name = last < nF ? cores[last].name : characteristics[last - nF].name;
@@ -731,25 +836,35 @@ export class Stepper {
     return false;
   }
 
-  /** Solve for x with the devices on their present pieces. */
-  private solveNow(step: StepLength, history: Float64Array): boolean {
-    const { x, piece, pieceOffset, pieceSlope, nF, dFrom, dTo } = this;
+  /** Solve for X with the devices on their present pieces. */
+  private solveNow(step: StepLength): boolean {
+    const { nF } = this;
+    const { n } = this.system.pattern;
+    const devices = this.piece.length;
     const fluxes = this.nC + this.nL;
     if (this.factorsFor !== step || this.factorsA !== this.keyA || this.factorsB !== this.keyB) {
       if (!this.factorNow(step)) return false;
     }
-    copy(this.sources, x);
-    for (let d = 0; d < piece.length; d++) {
-      const p = piece[d];
-      let s = pieceOffset[p];
-      if (d < nF) s += pieceSlope[p] * history[fluxes + d];
-      x[dFrom[d]] -= s;
-      x[dTo[d]] += s;
+    for (let i = 0; i <= n; i++) X[i] = SOURCES[i];
+    for (let d = 0; d < devices; d++) {
+      const p = D_PIECE[d];
+      let s = PIECE_OFFSET[p];
+      if (d < nF) s += PIECE_SLOPE[p] * HISTORY[fluxes + d];
+      X[D_FROM[d]] -= s;
+      X[D_TO[d]] += s;
     }
-    solve(this.system.pattern, this.factors, x);
-    x[x.length - 1] = 0;
-    this.solves++;
+    this.solve();
     return true;
+  }
+
+  /** Solve for X in place with the factors at hand: `solve` of ldl.ts, in the working store. */
+  private solve(): void {
+    const { n, nnz } = this.system.pattern;
+    for (let p = 0; p < nnz; p++) X[ROW[p]] -= FACTORS[p] * X[COLUMN[p]];
+    for (let j = 0; j < n; j++) X[j] *= DIAGONAL[j];
+    for (let p = nnz - 1; p >= 0; p--) X[COLUMN[p]] -= FACTORS[p] * X[ROW[p]];
+    X[n] = 0;
+    this.solves++;
   }
 
   private factorNow(step: StepLength): boolean {
@@ -779,7 +894,9 @@ export class Stepper {
         return false;
       }
     }
-    this.factors = factors;
+    const { n, nnz } = pattern;
+    for (let j = 0; j < n; j++) DIAGONAL[j] = factors[j];
+    for (let p = 0; p < nnz; p++) FACTORS[p] = factors[n + p];
     this.factorsFor = step;
     this.factorsA = this.keyA;
     this.factorsB = this.keyB;
@@ -808,19 +925,19 @@ export class Stepper {
    * secant until its change of sign is bracketed closely.
    * @returns how far x then lies from `trial`, as a share of the largest voltage
    */
-  private searchLine(step: StepLength, history: Float64Array): number {
-    const { x, trial } = this;
+  private searchLine(step: StepLength): number {
+    const { n } = this.system.pattern;
     let share = 1;
-    const atFull = this.slopeAlong(step, history, 1);
+    const atFull = this.slopeAlong(step, 1);
     if (atFull > 0) {
       let low = 0;
       let high = 1;
-      let atLow = this.slopeAlong(step, history, 0);
+      let atLow = this.slopeAlong(step, 0);
       let atHigh = atFull;
       for (let k = 0; atLow < 0 && k < 60 && high - low > 1e-14; k++) {
         const secant = low - (atLow * (high - low)) / (atHigh - atLow);
         const t = k % 3 === 2 || !(secant > low && secant < high) ? 0.5 * (low + high) : secant;
-        const value = this.slopeAlong(step, history, t);
+        const value = this.slopeAlong(step, t);
         if (value < 0) {
           low = t;
           atLow = value;
@@ -833,24 +950,25 @@ export class Stepper {
     }
     let moved = 0;
     let size = Number.MIN_VALUE;
-    for (let i = 0; i < x.length; i++) {
-      const step = share * (x[i] - trial[i]);
-      x[i] = trial[i] + step;
+    for (let i = 0; i <= n; i++) {
+      const step = share * (X[i] - TRIAL[i]);
+      X[i] = TRIAL[i] + step;
       moved = Math.max(moved, Math.abs(step));
-      size = Math.max(size, Math.abs(x[i]));
+      size = Math.max(size, Math.abs(X[i]));
     }
     return moved / size;
   }
 
   /** Derivative of the co-content along trial → x, at the share t of the way. */
-  private slopeAlong(step: StepLength, history: Float64Array, t: number): number {
-    const { x, trial, sources, nC, nL, nF } = this;
+  private slopeAlong(step: StepLength, t: number): number {
+    const { nC, nL, nF } = this;
+    const { n } = this.system.pattern;
     const voltage = (from: number, to: number): number =>
-      trial[from] - trial[to] + t * (x[from] - trial[from] - (x[to] - trial[to]));
+      TRIAL[from] - TRIAL[to] + t * (X[from] - TRIAL[from] - (X[to] - TRIAL[to]));
     const direction = (from: number, to: number): number =>
-      x[from] - trial[from] - (x[to] - trial[to]);
+      X[from] - TRIAL[from] - (X[to] - TRIAL[to]);
     let sum = 0;
-    for (let i = 0; i < x.length - 1; i++) sum -= sources[i] * (x[i] - trial[i]);
+    for (let i = 0; i < n; i++) sum -= SOURCES[i] * (X[i] - TRIAL[i]);
     for (let e = 0; e < nC; e++) {
       sum +=
         step.gC[e] * voltage(this.cFrom[e], this.cTo[e]) * direction(this.cFrom[e], this.cTo[e]);
@@ -874,7 +992,7 @@ export class Stepper {
     }
     for (let d = 0; d < this.piece.length; d++) {
       const v = voltage(this.dFrom[d], this.dTo[d]);
-      const at = d < nF ? history[nC + nL + d] + step.a * v : v;
+      const at = d < nF ? HISTORY[nC + nL + d] + step.a * v : v;
       let p = this.piece[d];
       while (at > this.pieceHigh[p]) p++;
       while (at < this.pieceLow[p]) p--;
@@ -884,69 +1002,63 @@ export class Stepper {
     return sum;
   }
 
-  /** States at the end of a stage, from the node voltages x. */
-  private takeStates(
-    step: StepLength,
-    history: Float64Array,
-    x: Float64Array,
-    out: Float64Array,
-  ): void {
-    const { nC, nL, nF, cFrom, cTo, lFrom, lTo, lStarFrom, lStarTo, lRatio } = this;
-    const { gC, kC, gL, wL, a } = step;
+  /** States at the end of a stage, from the node voltages: STAGE2 from HISTORY and X. */
+  private takeStates({ a }: StepLength): void {
+    const { nC, nL, nF } = this;
     for (let e = 0; e < nC; e++) {
-      const old = history[e];
-      out[e] = old + kC[e] * gC[e] * (x[cFrom[e]] - x[cTo[e]] - old);
+      const old = HISTORY[e];
+      STAGE2[e] = old + C_SHARE[e] * (X[C_FROM[e]] - X[C_TO[e]] - old);
     }
     for (let e = 0; e < nL; e++) {
-      const v = x[lFrom[e]] - x[lTo[e]] + lRatio[e] * (x[lStarFrom[e]] - x[lStarTo[e]]);
-      out[nC + e] = wL[e] * history[nC + e] + gL[e] * v;
+      const v = X[L_FROM[e]] - X[L_TO[e]] + L_RATIO[e] * (X[L_STAR_FROM[e]] - X[L_STAR_TO[e]]);
+      STAGE2[nC + e] = L_W[e] * HISTORY[nC + e] + L_G[e] * v;
     }
     for (let d = 0; d < nF; d++) {
       const i = nC + nL + d;
-      out[i] = history[i] + a * (x[this.dFrom[d]] - x[this.dTo[d]]);
+      STAGE2[i] = HISTORY[i] + a * (X[D_FROM[d]] - X[D_TO[d]]);
     }
   }
 
   /** Add this stage's powers × weight to the work and heat of the step. */
-  private addPowers(time: number, weight: number, out: Float64Array): void {
-    const { x, nC, nL, nF, nR, heat, deviceCurrent, piece, pieceSlope, pieceOffset } = this;
-    const { dFrom, dTo, dPart, active } = this;
+  private addPowers(time: number, weight: number): void {
+    const { nC, nL, nF, nR, heat, active } = this;
+    const devices = this.piece.length;
     for (let d = 0; d < nF; d++) {
-      const p = piece[d];
-      deviceCurrent[d] = pieceSlope[p] * out[nC + nL + d] + pieceOffset[p];
+      const p = D_PIECE[d];
+      D_CURRENT[d] = PIECE_SLOPE[p] * STAGE2[nC + nL + d] + PIECE_OFFSET[p];
     }
     let work = 0;
-    for (let d = nF; d < piece.length; d++) {
-      const v = x[dFrom[d]] - x[dTo[d]];
-      const p = piece[d];
-      const i = pieceSlope[p] * v + pieceOffset[p];
-      deviceCurrent[d] = i;
-      heat[dPart[d]] += weight * v * i;
+    for (let d = nF; d < devices; d++) {
+      const v = X[D_FROM[d]] - X[D_TO[d]];
+      const p = D_PIECE[d];
+      const i = PIECE_SLOPE[p] * v + PIECE_OFFSET[p];
+      D_CURRENT[d] = i;
+      heat[D_PART[d]] += weight * v * i;
     }
     for (let k = 0; k < active.length; k++) {
       const d = active[k];
-      const i = deviceCurrent[d];
-      const delivered = i * (this.activeResistance[k] * i - (x[dFrom[d]] - x[dTo[d]]));
-      heat[dPart[d]] += weight * delivered;
+      const i = D_CURRENT[d];
+      const delivered = i * (this.activeResistance[k] * i - (X[D_FROM[d]] - X[D_TO[d]]));
+      heat[D_PART[d]] += weight * delivered;
       work += delivered;
     }
     this.work += weight * work;
     for (let e = 0; e < nR; e++) {
-      const v = x[this.rFrom[e]] - x[this.rTo[e]];
+      const v = X[this.rFrom[e]] - X[this.rTo[e]];
       heat[this.rPart[e]] += weight * this.rConductance[e] * v * v;
     }
     for (let e = 0; e < nL; e++) {
-      const i = out[nC + e];
+      const i = STAGE2[nC + e];
       heat[this.lPart[e]] += weight * this.lResistance[e] * i * i;
     }
     for (let k = 0; k < this.resistive.length; k++) {
       const e = this.resistive[k];
-      const v = x[this.cFrom[e]] - x[this.cTo[e]] - out[e];
+      const v = X[this.cFrom[e]] - X[this.cTo[e]] - STAGE2[e];
       heat[this.cPart[e]] += (weight * v * v) / this.cResistance[e];
     }
     for (let e = 0; e < this.sFrom.length; e++) {
       const emf = this.emf(e, time);
-      const i = this.sConductance[e] * (x[this.sFrom[e]] - x[this.sTo[e]] - emf);
+      const i = this.sConductance[e] * (X[this.sFrom[e]] - X[this.sTo[e]] - emf);
       heat[this.sPart[e]] += (weight * i * i) / this.sConductance[e];
       this.work -= weight * emf * i;
     }
