@@ -33,8 +33,9 @@ export function Cautions() {
         </div>
         <ul>
           <li>
-            The voltage is lethal, and so is the charge that stays behind and comes back by itself.
-            Switch off, discharge, put the earth stick on, and leave it on while you touch anything.
+            The voltage is lethal, and so is the charge that stays behind and comes back by itself,
+            in the stack and its cable as much as in the bus capacitor. Switch off, discharge
+            through a resistor, put the earth stick on, and leave it on while you touch anything.
           </li>
           <li>Work behind interlocks, and never alone.</li>
           <li>Any vacuum device above about 5 kV gives X-rays.</li>

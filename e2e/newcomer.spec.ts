@@ -163,7 +163,10 @@ test('a bay opens by keyboard; its values take what people type, refuse what can
   await page.keyboard.press('Enter');
   await expect(resistance).toHaveValue('4.7 MΩ');
   await bay(page, 'Tank').press('Enter');
-  const inductor = sheet(page, 'Tank').getByRole('spinbutton', { name: 'Series inductor' });
+  const inductor = sheet(page, 'Tank').getByRole('spinbutton', {
+    name: 'Series inductor',
+    exact: true,
+  });
   await inductor.fill('0.15 mH');
   await inductor.press('Enter');
   await expect(inductor).toHaveValue('150 µH');

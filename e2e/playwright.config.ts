@@ -12,8 +12,12 @@ export default defineConfig({
   testDir: '.',
   testMatch: '**/*.spec.ts',
   outputDir: '../.results/e2e',
-  // Two shared cores: a second browser would only make both slower, and timing tests false.
-  workers: 1,
+  // Two cores: what measures the page runs by itself, after the rest.
+  workers: 2,
+  projects: [
+    { name: 'tasks', testIgnore: '**/speed.spec.ts' },
+    { name: 'speed', testMatch: '**/speed.spec.ts', dependencies: ['tasks'] },
+  ],
   retries: 0,
   forbidOnly: true,
   timeout: 60_000,

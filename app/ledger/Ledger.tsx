@@ -35,10 +35,10 @@ const COUNTS = {
 /** How far the readings may be trusted, in words. */
 const STANDING: Readonly<Record<RunState, string>> = {
   starting: 'none yet',
-  running: 'so far',
-  held: 'so far, held',
+  running: 'last period, still moving',
+  held: 'last period, held',
   settled: 'settled',
-  failed: 'so far, stopped',
+  failed: 'last period before it stopped',
 };
 
 /** What stands for a reading that has no meaning yet. */

@@ -12,7 +12,7 @@
 
 /** Periods of the first stride, and how many strides of one length before it doubles and one. */
 const FIRST_STRIDE = 5;
-const STRIDES_PER_LENGTH = 6;
+const STRIDES_PER_LENGTH = 10;
 
 /** Estimates of which the largest counts. */
 const ESTIMATES = 3;

@@ -435,7 +435,9 @@ export class Stepper {
     const { a, h } = step;
     if (resident !== this) this.moveIn();
     for (let i = 0; i < nS; i++) {
-      STATE[i] = state[i];
+      const now = state[i];
+      STATE[i] = now;
+      HISTORY[i] = now;
       SCALE[i] = scale[i];
     }
     this.attempted = h;
@@ -448,7 +450,6 @@ export class Stepper {
     this.work = 0;
     this.failure = null;
 
-    for (let i = 0; i < nS; i++) HISTORY[i] = STATE[i];
     if (!this.stage(step, time + GAMMA * h, (1 - GAMMA) * h)) return this.fail();
     this.changed = this.keyA !== keyA || this.keyB !== keyB;
     for (let i = 0; i < nS; i++) {

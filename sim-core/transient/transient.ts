@@ -308,7 +308,8 @@ export class Transient {
       stepper.accept();
       this.position += stride;
       this.time = this.start + this.position * interval.unit;
-      this.notePeaks();
+      // Peaks are known well enough from every fourth step; at the start every one counts.
+      if (this.periods < 2 || (stepper.steps & 3) === 0) this.notePeaks();
       this.chooseLevel(interval, error);
       const last = this.current === this.intervals.length - 1;
       if (last && this.position >= interval.coarse << finestLevel) this.endPeriod();
