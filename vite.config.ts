@@ -42,7 +42,12 @@ export default defineConfig({
   // Relative, so that the built site can be served from any folder.
   base: './',
   plugins: [react(), policyTag],
-  worker: { format: 'es' },
+  worker: {
+    format: 'es',
+    // Constants stay constants: the solver's loops are twice as fast when the compiler may rely
+    // on the arrays of its working store never being exchanged.
+    rolldownOptions: { output: { topLevelVar: false } },
+  },
   build: {
     outDir: here('dist'),
     emptyOutDir: true,
