@@ -12,7 +12,7 @@
 
 /** Periods of the first stride, and how many strides of one length before it doubles and one. */
 const FIRST_STRIDE = 5;
-const STRIDES_PER_LENGTH = 10;
+const STRIDES_PER_LENGTH = 6;
 
 /** Estimates of which the largest counts. */
 const ESTIMATES = 3;
@@ -29,6 +29,9 @@ const UNREST = 2e-5;
  */
 const UNREST_DECAY = 0.8;
 const SAME_WAY = 0.8;
+
+/** Changes below this share over a stride are rest, whichever way they point. */
+const REST = 5e-7;
 
 /** Shorter strides than this (periods) cannot tell unrest from a slow drift beneath it. */
 const UNREST_STRIDE = 20;
@@ -110,7 +113,8 @@ export class Settling {
       if (last < 0) known = false;
       else {
         const drifts = along[g] > SAME_WAY * share * last * norm[g];
-        const unrest = share < UNREST && this.stride >= UNREST_STRIDE && !drifts;
+        const small = share < REST || (share < UNREST && !drifts);
+        const unrest = small && this.stride >= UNREST_STRIDE;
         worst = Math.max(worst, left(share, last, unrest ? UNREST_DECAY : Infinity));
       }
     }
