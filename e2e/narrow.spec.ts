@@ -116,6 +116,8 @@ test('every control is at least 44 px wide and high under a finger', async ({ pa
   const dialog = page.getByRole('dialog', { name: 'Designs to open' });
   for (const button of await dialog.getByRole('button').all()) {
     const box = await button.boundingBox();
+    // The file chooser itself is hidden; its label takes the finger.
+    if (box && box.width <= 1) continue;
     expect(Math.min(box?.width ?? 0, box?.height ?? 0)).toBeGreaterThanOrEqual(43.5);
   }
 });
