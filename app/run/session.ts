@@ -13,7 +13,7 @@ import {
 } from '../../sim-core/index.ts';
 import { useDocument } from '../document/store.ts';
 import { appendHistory, clearColumns, markHistory, setDetail } from '../lanes/columns.ts';
-import type { Chunk } from './messages.ts';
+import type { Chunk, HistoryColumns } from './messages.ts';
 import { useRun } from './store.ts';
 import type { Solver } from './worker.ts';
 
@@ -44,6 +44,8 @@ let changedAt = 0;
 /** When the lanes and the figures were last brought up to date, ms. */
 let drawnAt = 0;
 let writtenAt = 0;
+/** Periods that the history strip does not show yet. */
+const undrawn: HistoryColumns[] = [];
 
 const watched = (section: number): readonly string[] => [
   'bridge voltage',
@@ -84,10 +86,12 @@ function takeChunk(chunk: Chunk): void {
   const now = performance.now();
   const last = chunk.status !== 'running';
   awake = !last;
-  appendHistory(chunk.history);
-  if (chunk.detail && (last || now - drawnAt >= DRAW_EVERY)) {
+  undrawn.push(chunk.history);
+  if (last || now - drawnAt >= DRAW_EVERY) {
     drawnAt = now;
-    setDetail(chunk.detail);
+    for (const history of undrawn) appendHistory(history);
+    undrawn.length = 0;
+    if (chunk.detail) setDetail(chunk.detail);
   }
   if (!last && now - writtenAt < WRITE_EVERY) return;
   writtenAt = now;
@@ -123,10 +127,15 @@ async function tell(): Promise<void> {
         opening = open !== null;
         const opened = await (open ? solver.open(change ?? open) : solver.change(change as Design));
         opening = false;
-        // The first samples of the new design are drawn as soon as they are there.
-        drawnAt = writtenAt = 0;
+        // The first samples of the new design are drawn as soon as they are there; its figures
+        // follow, so that writing them does not hold up the lanes.
+        drawnAt = 0;
+        writtenAt = performance.now();
         if (opened.ok) {
-          if (open) clearColumns();
+          if (open) {
+            undrawn.length = 0;
+            clearColumns();
+          }
           changedAt = open ? 0 : useRun.getState().time;
           useRun.setState({
             problem: null,

@@ -8,7 +8,7 @@ import { Run } from '../../sim-core/solve.ts';
 import type { Chunk, DetailColumns, HistoryColumns, Opened } from './messages.ts';
 
 /** One pull computes for about this long, ms: short, so that a change is never kept waiting. */
-const SLICE = 18;
+const SLICE = 10;
 /** Steps between two looks at the clock. */
 const STEPS_PER_LOOK = 16;
 /** Drive periods in the detail. */
@@ -182,6 +182,8 @@ const solver = {
         history.add(run);
         turnWindows();
         if (run.settled && detailIsFull()) break;
+        // What a change does is shown as soon as there is a period of it.
+        if (!sent) break;
       }
       if (count % STEPS_PER_LOOK === 0 && performance.now() > until) break;
     }
