@@ -12,7 +12,7 @@ import { join } from 'node:path';
 import { alone, installIfNeeded, project } from '../app/headless/install.mjs';
 
 /** Minutes for all steps together; a step that would pass the end is stopped and has failed. */
-const allowance = 10;
+const allowance = 8;
 
 await installIfNeeded();
 

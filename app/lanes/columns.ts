@@ -133,11 +133,13 @@ function joined(first: string, second: string): string | null {
  * Mark a change made at the present end of the history ("bus 310 V → 320 V"). A value that is
  * turned gives one mark, from where it was to where it is left. Changes made before another period
  * is done share one mark, which keeps the latest label.
+ * @param goesOn  the change goes on with the one before, as one turn of one value
  */
-export function markHistory(label: string): void {
+export function markHistory(label: string, goesOn = false): void {
   const now = startOf(length);
   const last = marks.at(-1);
-  const turned = last && now - last.time <= SOON * now ? joined(last.label, label) : null;
+  const turned =
+    last && (goesOn || now - last.time <= SOON * now) ? joined(last.label, label) : null;
   const kept = last && (turned !== null || last.time === now) ? marks.slice(0, -1) : marks;
   marks = [...kept, { time: now, label: turned ?? label }].slice(-MARK_CAPACITY);
   notify();

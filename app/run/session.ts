@@ -84,8 +84,9 @@ function plantDiffers(before: Design, after: Design): boolean {
 
 function takeChunk(chunk: Chunk): void {
   const now = performance.now();
-  const last = chunk.status !== 'running';
-  awake = !last;
+  awake = chunk.status === 'running';
+  // What comes last stays on the page: nothing of it may wait for a next time.
+  const last = !awake || held;
   undrawn.push(chunk.history);
   if (last || now - drawnAt >= DRAW_EVERY) {
     drawnAt = now;
@@ -194,7 +195,8 @@ export function openSession(): void {
       wishes.change = null;
       showSection(Math.min(useRun.getState().section, design.sections.count));
     } else {
-      markHistory(describeChange(before.design, design));
+      // An edit that undo takes for one with the last is one turn of one value.
+      markHistory(describeChange(before.design, design), past === before.past);
       wishes.change = design;
     }
     void tell();

@@ -115,11 +115,14 @@ export function numberUnknowns(network: Network): System {
   };
 }
 
-/** Add conductances to a matrix: values[position] += weight · g[e]. Allocates nothing. */
-export function stamp(stamps: Stamps, g: Float64Array, values: Float64Array): void {
+/**
+ * Add conductances to a matrix: values[position] += weight · g[from + e] for every element e of
+ * the stamps. Allocates nothing.
+ */
+export function stamp(stamps: Stamps, g: Float64Array, values: Float64Array, from = 0): void {
   const { first, position, weight } = stamps;
-  for (let e = 0, p = 0; e < g.length; e++) {
-    const conductance = g[e];
+  for (let e = 0, p = 0; e < first.length - 1; e++) {
+    const conductance = g[from + e];
     for (const end = first[e + 1]; p < end; p++) values[position[p]] += weight[p] * conductance;
   }
 }

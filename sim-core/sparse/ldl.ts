@@ -95,23 +95,3 @@ export function factor(pattern: Pattern, a: Float64Array): number {
   }
   return -1;
 }
-
-/**
- * Solve A x = b in place. Allocates nothing.
- * @param factors  from `factor`
- * @param x        right-hand side of length at least n, overwritten by the solution
- */
-export function solve(pattern: Pattern, factors: Float64Array, x: Float64Array): void {
-  const { n, start, row } = pattern;
-  for (let j = 0, p = 0; j < n; j++) {
-    const value = x[j];
-    const end = start[j + 1];
-    for (; p < end; p++) x[row[p]] -= factors[n + p] * value;
-  }
-  for (let j = n - 1, p = start[n] - 1; j >= 0; j--) {
-    let value = x[j] * factors[j];
-    const end = start[j];
-    for (; p >= end; p--) value -= factors[n + p] * x[row[p]];
-    x[j] = value;
-  }
-}

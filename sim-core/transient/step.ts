@@ -12,7 +12,7 @@
  *
  * State vector: capacitor voltages (V), then inductor currents (A), then flux linkages (Wb).
  */
-import { numberUnknowns, type Stamps, type System, stamp } from '../network/mna.ts';
+import { numberUnknowns, type System, stamp } from '../network/mna.ts';
 import type { Network, Part, Piece } from '../network/network.ts';
 import { factor } from '../sparse/ldl.ts';
 import { FactorCache } from './factors.ts';
@@ -476,7 +476,8 @@ export class Stepper {
     this.error = this.slopeKnown ? Math.abs(ESTIMATE) * h * worst : 0;
     // A sum is finite only if all its terms are.
     if (!(sum - sum === 0)) {
-      const bad = STAGE2.findIndex((value) => !Number.isFinite(value));
+      let bad = 0;
+      while (bad < nS - 1 && Number.isFinite(STAGE2[bad])) bad++;
       this.failure = { kind: 'not-finite', name: this.nameOfState(bad) };
       return false;
     }
@@ -858,7 +859,7 @@ export class Stepper {
     return true;
   }
 
-  /** Solve for X in place with the factors at hand: `solve` of ldl.ts, in the working store. */
+  /** Solve L·D·Lᵀ X = X in place with the factors at hand, each triangle as one flat loop. */
   private solve(): void {
     const { n, nnz } = this.system.pattern;
     for (let p = 0; p < nnz; p++) X[ROW[p]] -= FACTORS[p] * X[COLUMN[p]];
@@ -879,8 +880,8 @@ export class Stepper {
         dSlope[d] = d < nF ? step.a * pieceSlope[piece[d]] : pieceSlope[piece[d]];
       }
       assembled.set(step.base);
-      addDevices(this.system.cores, dSlope, 0, assembled);
-      addDevices(this.system.characteristics, dSlope, nF, assembled);
+      stamp(this.system.cores, dSlope, assembled);
+      stamp(this.system.characteristics, dSlope, assembled, nF);
       factors = this.cache.add(a, b);
       factors.set(assembled);
       let bad = factor(pattern, factors);
@@ -921,10 +922,10 @@ export class Stepper {
   }
 
   /**
-   * Move x to the point of least co-content on the line from `trial` to x.
+   * Move X to the point of least co-content on the line from TRIAL to X.
    * The derivative along the line is a rising function in straight pieces: halve or take the
    * secant until its change of sign is bracketed closely.
-   * @returns how far x then lies from `trial`, as a share of the largest voltage
+   * @returns how far X then lies from TRIAL, as a share of the largest voltage
    */
   private searchLine(step: StepLength): number {
     const { n } = this.system.pattern;
@@ -960,7 +961,7 @@ export class Stepper {
     return moved / size;
   }
 
-  /** Derivative of the co-content along trial → x, at the share t of the way. */
+  /** Derivative of the co-content along TRIAL → X, at the share t of the way. */
   private slopeAlong(step: StepLength, t: number): number {
     const { nC, nL, nF } = this;
     const { n } = this.system.pattern;
@@ -1063,13 +1064,5 @@ export class Stepper {
       heat[this.sPart[e]] += (weight * i * i) / this.sConductance[e];
       this.work -= weight * emf * i;
     }
-  }
-}
-
-function addDevices(stamps: Stamps, g: Float64Array, offset: number, values: Float64Array): void {
-  const { first, position, weight } = stamps;
-  for (let e = 0, p = 0; e < first.length - 1; e++) {
-    const conductance = g[offset + e];
-    for (const end = first[e + 1]; p < end; p++) values[position[p]] += weight[p] * conductance;
   }
 }

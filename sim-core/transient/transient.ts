@@ -3,11 +3,11 @@
  * and follow the need.
  *
  * Between two edges the interval is divided into equal coarse steps, each halved up to a fixed
- * number of times (its level). A step in which any device changes its piece is refused and tried
- * two levels finer, down to the event level; a step whose error estimate is above tolerance is
- * refused and tried one or two levels finer. After an easy step the level rises again as soon as
- * the time is a multiple of the longer step. So only few lengths ever occur, and the factors of
- * each are kept.
+ * number of times (its level). A step in which any device changes its piece is refused above the
+ * event level; the secant tells where the change is due, and dyadic steps walk up to that point.
+ * A step whose error estimate is above tolerance is refused and tried one or two levels finer.
+ * After an easy step the level rises again as far as the error and the grid allow. So only few
+ * lengths ever occur, and the factors of each are kept.
  */
 import type { GatePattern } from '../network/gates.ts';
 import type { Network, Part } from '../network/network.ts';
@@ -299,8 +299,9 @@ export class Transient {
         continue;
       }
       if (stepper.changed) {
-        if (!stepper.reconsider(step, this.time)) return stepper.failure;
-        if (stepper.spread > EVENT_SLACK * tolerance && level < finestLevel) {
+        const solved = stepper.reconsider(step, this.time);
+        if (!solved && level === finestLevel) return stepper.failure;
+        if (!solved || (stepper.spread > EVENT_SLACK * tolerance && level < finestLevel)) {
           this.refuse(Math.min(finestLevel, level + 2));
           continue;
         }

@@ -209,3 +209,16 @@ test('a listener hears of every change until it leaves', () => {
   clearColumns();
   expect(heard).toBe(4);
 });
+
+test('a value that goes on being turned keeps one mark, however far the run came in between', () => {
+  clearColumns();
+  appendHistory(columnsOf([numbered(1, 1)], 0));
+  markHistory('Bus voltage 310 V → 320 V');
+  appendHistory(columnsOf([numbered(2, 1), numbered(3, 1)], 1));
+  markHistory('Bus voltage 320 V → 330 V', true);
+  expect(readHistory().marks.map((mark) => mark.label)).toEqual(['Bus voltage 310 V → 330 V']);
+  appendHistory(columnsOf([numbered(4, 1), numbered(5, 1)], 3));
+  markHistory('Bus voltage 330 V → 340 V');
+  expect(readHistory().marks).toHaveLength(2);
+  clearColumns();
+});
