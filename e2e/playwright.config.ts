@@ -24,7 +24,8 @@ export default defineConfig({
   reporter: [['list'], ['json', { outputFile: '../.results/e2e.json' }]],
   use: {
     baseURL: address,
-    trace: 'retain-on-failure',
+    // A trace of every test takes half as long again: ask for one by hand, with --trace on.
+    trace: 'off',
     screenshot: 'only-on-failure',
     launchOptions: {
       executablePath: process.env.KILOSTACK_BROWSER,
